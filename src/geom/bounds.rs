@@ -1,0 +1,72 @@
+//! Axis-parallel boxes.
+
+use super::Point;
+
+/// The box from `min` to `max`, both included. [`Bounds::EMPTY`] holds no point and is the unit of [`Bounds::union`].
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Bounds {
+    pub min: Point,
+    pub max: Point,
+}
+
+impl Bounds {
+    pub const EMPTY: Bounds = Bounds {
+        min: Point::new(f64::INFINITY, f64::INFINITY),
+        max: Point::new(f64::NEG_INFINITY, f64::NEG_INFINITY),
+    };
+
+    pub fn of(points: impl IntoIterator<Item = Point>) -> Bounds {
+        points.into_iter().fold(Bounds::EMPTY, Bounds::with)
+    }
+
+    /// The smallest box that holds `self` and `p`.
+    pub fn with(self, p: Point) -> Bounds {
+        Bounds {
+            min: Point::new(self.min.x.min(p.x), self.min.y.min(p.y)),
+            max: Point::new(self.max.x.max(p.x), self.max.y.max(p.y)),
+        }
+    }
+
+    pub fn union(self, other: Bounds) -> Bounds {
+        self.with(other.min).with(other.max)
+    }
+
+    pub fn is_empty(self) -> bool {
+        self.min.x > self.max.x
+    }
+
+    pub fn contains(self, p: Point) -> bool {
+        self.min.x <= p.x && p.x <= self.max.x && self.min.y <= p.y && p.y <= self.max.y
+    }
+
+    pub fn overlaps(self, other: Bounds) -> bool {
+        self.min.x <= other.max.x
+            && other.min.x <= self.max.x
+            && self.min.y <= other.max.y
+            && other.min.y <= self.max.y
+    }
+
+    /// Squared distance from `p` to the box, m²; 0 inside.
+    pub fn distance2(self, p: Point) -> f64 {
+        let dx = (self.min.x - p.x).max(p.x - self.max.x).max(0.0);
+        let dy = (self.min.y - p.y).max(p.y - self.max.y).max(0.0);
+        dx * dx + dy * dy
+    }
+
+    pub fn width(self) -> f64 {
+        self.max.x - self.min.x
+    }
+
+    pub fn height(self) -> f64 {
+        self.max.y - self.min.y
+    }
+
+    /// The longer of the two sides, m.
+    pub fn extent(self) -> f64 {
+        self.width().max(self.height())
+    }
+
+    pub fn centre(self) -> Point {
+        self.min.midpoint(self.max)
+    }
+}

@@ -1,0 +1,21 @@
+//! Plane geometry: points, rings, polygons with holes, exact predicates, validation, yards, convex pieces and a spatial
+//! index.
+//!
+//! Everything is in site metres, x east and y north, f64, near the origin. Decisions about orientation go through
+//! [`predicates`]; distances are plain floating point. Nothing here knows of setbacks, rules or solving.
+
+pub mod area;
+pub mod bounds;
+pub mod pieces;
+pub mod point;
+pub mod predicates;
+pub mod segment;
+pub mod tree;
+pub mod triangulate;
+pub mod validate;
+pub mod yard;
+
+pub use area::{Area, Polygon, Ring};
+pub use bounds::Bounds;
+pub use point::{Point, Vec2};
+pub use segment::Segment;

@@ -1,0 +1,69 @@
+//! Straight segments: nearest point and distance.
+
+use super::{Point, Vec2, predicates::side};
+use std::cmp::Ordering;
+
+/// The closed segment from `a` to `b`.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Segment {
+    pub a: Point,
+    pub b: Point,
+}
+
+impl Segment {
+    pub const fn new(a: Point, b: Point) -> Self {
+        Segment { a, b }
+    }
+
+    pub fn vector(self) -> Vec2 {
+        self.b - self.a
+    }
+
+    pub fn length(self) -> f64 {
+        self.vector().length()
+    }
+
+    /// The point of the segment that is nearest to p; `a` where the segment has no length.
+    pub fn nearest(self, p: Point) -> Point {
+        let d = self.vector();
+        let along = (p - self.a).dot(d);
+        let length2 = d.length2();
+        if along <= 0.0 || length2 == 0.0 {
+            self.a
+        } else if along >= length2 {
+            self.b
+        } else {
+            self.a + d * (along / length2)
+        }
+    }
+
+    pub fn distance(self, p: Point) -> f64 {
+        p.distance(self.nearest(p))
+    }
+
+    /// Where the two closed segments meet, exactly decided, the place itself rounded: `None` where they do not; for
+    /// segments on one line, one of the shared points.
+    pub fn meets(self, other: Segment) -> Option<Point> {
+        let (a, b, c, d) = (self.a, self.b, other.a, other.b);
+        let (sc, sd) = (side(a, b, c), side(a, b, d));
+        let (sa, sb) = (side(c, d, a), side(c, d, b));
+        if sc == Ordering::Equal && sd == Ordering::Equal {
+            let holds = |s: Segment, p: Point| super::predicates::on_segment(s.a, s.b, p);
+            return [c, d]
+                .into_iter()
+                .find(|&p| holds(self, p))
+                .or_else(|| [a, b].into_iter().find(|&p| holds(other, p)));
+        }
+        if (sc == sd && sc != Ordering::Equal) || (sa == sb && sa != Ordering::Equal) {
+            return None;
+        }
+        for (s, p) in [(sc, c), (sd, d), (sa, a), (sb, b)] {
+            if s == Ordering::Equal {
+                return Some(p);
+            }
+        }
+        let (u, v) = (self.vector(), other.vector());
+        let t = (c - a).cross(v) / u.cross(v);
+        Some(a.lerp(b, t.clamp(0.0, 1.0)))
+    }
+}
