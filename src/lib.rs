@@ -4,4 +4,7 @@
 #![forbid(unsafe_code)]
 
 pub mod geom;
+pub mod limits;
+pub mod lp;
+pub mod placement;
 pub mod site;

@@ -64,6 +64,8 @@ pub enum SiteError {
         "{given} setbacks for {wanted} segments of the outer ring: give one for each, in file order"
     )]
     SetbackCount { given: usize, wanted: usize },
+    #[error("the {what} cannot be cut into convex pieces: draw its outline with fewer needles")]
+    NoPieces { what: String },
     #[error("{what} uses a share of the height, but the structure has no height: add height_m")]
     NoHeight { what: String },
     #[error(

@@ -1,0 +1,411 @@
+//! The three-column game: maximise r subject to w_i r <= l · d_i for every row i, l in the simplex of three weights.
+//!
+//! Dual simplex on fixed arrays. Rows are added one at a time, each solve starting from the last optimum, as a search by
+//! column generation wants it. Any weights y >= 0 on the rows with sum_i y_i w_i = 1 bound the game by
+//! max_k sum_i y_i d_i[k]; the bound reported is that figure, so it holds whatever rounding did to the pivots. Rows
+//! with w = 0 speak of the point alone; when they leave no point, weights with sum_i y_i w_i = 0 and all columns
+//! negative show it.
+
+/// Most rows a game holds; a piece of a lot meets three to six.
+pub const MAX_ROWS: usize = 24;
+
+/// Pivots of one solve. Each one lowers the value except at ties, and few rows are there; met only by cycling.
+const MAX_PIVOTS: usize = 64;
+
+/// A constraint counts as broken from here on, relative to the size of the game's entries. Below rounding (1e-16) times the
+/// few dozen operations of a pivot; at ten times this value bounds would be visibly looser than the gap asked for.
+const BROKEN: f64 = 1e-14;
+
+/// Smallest part of an entering constraint along a leaving one that a pivot may divide by.
+const PIVOT: f64 = 1e-11;
+
+/// One constraint p·x + q·y + e·r <= h in the plane coordinates (x, y) = (l_0, l_1) of the simplex.
+#[derive(Clone, Copy, Debug, Default)]
+struct Constraint {
+    p: f64,
+    q: f64,
+    e: f64,
+    h: f64,
+}
+
+/// The three sides of the simplex, which stand before the rows in every game: l_0 >= 0, l_1 >= 0, l_2 >= 0.
+const SIDES: [Constraint; 3] = [
+    Constraint {
+        p: -1.0,
+        q: 0.0,
+        e: 0.0,
+        h: 0.0,
+    },
+    Constraint {
+        p: 0.0,
+        q: -1.0,
+        e: 0.0,
+        h: 0.0,
+    },
+    Constraint {
+        p: 1.0,
+        q: 1.0,
+        e: 0.0,
+        h: 1.0,
+    },
+];
+
+/// One row: w r <= l · d.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct GameRow {
+    pub d: [f64; 3],
+    pub w: f64,
+}
+
+/// A game with its rows and the basis of its last optimum.
+#[derive(Clone, Debug)]
+pub struct Game {
+    rows: [GameRow; MAX_ROWS],
+    n_rows: usize,
+    basis: [usize; 3],
+    weights: [f64; 3],
+    scale: f64,
+}
+
+/// The optimum of a game as it stands.
+#[derive(Clone, Copy, Debug)]
+pub struct Value {
+    /// An upper bound of the value by the weights: max over the columns; minus infinity where no point is left.
+    pub bound: f64,
+    /// The optimal point of the simplex.
+    pub point: [f64; 3],
+    /// Row and weight, weights at least 0 with sum_i y_i w_i = 1 (0 where no point is left); unused entries have weight 0.
+    pub weights: [(usize, f64); 3],
+}
+
+impl Game {
+    /// A game with one row of positive weight, solved.
+    pub fn new(first: GameRow) -> Game {
+        debug_assert!(first.w > 0.0, "the first row bounds r");
+        let mut rows = [GameRow::default(); MAX_ROWS];
+        rows[0] = first;
+        let d = first.d;
+        let best = (0..3).fold(0, |best, k| if d[k] > d[best] { k } else { best });
+        let others = [(best + 1) % 3, (best + 2) % 3];
+        let weights = [1.0, d[best] - d[others[0]], d[best] - d[others[1]]].map(|y| y / first.w);
+        Game {
+            rows,
+            n_rows: 1,
+            basis: [3, others[0], others[1]],
+            weights,
+            scale: size(d),
+        }
+    }
+
+    pub fn n_rows(&self) -> usize {
+        self.n_rows
+    }
+
+    /// Adds a row; `false` when the game is full.
+    pub fn push(&mut self, row: GameRow) -> bool {
+        if self.n_rows == MAX_ROWS {
+            return false;
+        }
+        self.rows[self.n_rows] = row;
+        self.n_rows += 1;
+        self.scale = self.scale.max(size(row.d));
+        true
+    }
+
+    /// What comes back: the optimum over the rows added so far.
+    ///
+    /// Method: dual simplex from the basis of the last solve, most broken constraint first.
+    /// Preconditions: finite rows.
+    /// Degenerate input: ties and equal rows give one of the optimal bases; a pivot too small to trust ends the solve early
+    /// with a bound that still holds.
+    /// Tolerance: a constraint is broken beyond 1e-14 of the largest entry.
+    /// Cost: O(rows) a pivot, few pivots a row.
+    ///
+    /// ```
+    /// use roundstead::lp::game::{Game, GameRow};
+    /// let mut game = Game::new(GameRow { d: [0.0, 4.0, 0.0], w: 1.0 });
+    /// game.push(GameRow { d: [2.0, 0.0, 2.0], w: 1.0 });
+    /// assert!((game.solve().bound - 4.0 / 3.0).abs() < 1e-12);
+    /// ```
+    pub fn solve(&mut self) -> Value {
+        let mut point = self.primal();
+        for _ in 0..MAX_PIVOTS {
+            let Some(entering) = self.most_broken(point) else {
+                break;
+            };
+            match self.pivot(entering) {
+                Pivot::Made => point = self.primal(),
+                Pivot::NoPointLeft(weights) => {
+                    if let Some(value) = self.no_point(entering, weights) {
+                        return value;
+                    }
+                    break;
+                }
+            }
+        }
+        self.value(point)
+    }
+
+    fn constraint(&self, i: usize) -> Constraint {
+        if i < 3 {
+            return SIDES[i];
+        }
+        let GameRow { d: [d0, d1, d2], w } = self.rows[i - 3];
+        Constraint {
+            p: d2 - d0,
+            q: d2 - d1,
+            e: w,
+            h: d2,
+        }
+    }
+
+    /// The point (l_0, l_1, r) where the three constraints of the basis hold with equality.
+    fn primal(&self) -> [f64; 3] {
+        let [a, b, c] = self.basis.map(|i| self.constraint(i));
+        let [ia, ib, ic] = inverse_columns(a, b, c);
+        [0, 1, 2].map(|k| ia[k] * a.h + ib[k] * b.h + ic[k] * c.h)
+    }
+
+    fn most_broken(&self, [x, y, r]: [f64; 3]) -> Option<usize> {
+        let excess = |c: Constraint| c.p * x + c.q * y + c.e * r - c.h;
+        let mut worst = BROKEN * self.scale;
+        let mut found = None;
+        for i in 3..3 + self.n_rows {
+            let by = excess(self.constraint(i));
+            if by > worst && !self.basis.contains(&i) {
+                (worst, found) = (by, Some(i));
+            }
+        }
+        if found.is_none() {
+            found = (0..3).find(|&i| excess(SIDES[i]) > BROKEN && !self.basis.contains(&i));
+        }
+        found
+    }
+
+    /// Brings `entering` into the basis for the constraint whose weight runs out first.
+    fn pivot(&mut self, entering: usize) -> Pivot {
+        let [a, b, c] = self.basis.map(|i| self.constraint(i));
+        let n = self.constraint(entering);
+        let parts = inverse_columns(a, b, c).map(|col| n.p * col[0] + n.q * col[1] + n.e * col[2]);
+        let size = parts[0].abs().max(parts[1].abs()).max(parts[2].abs());
+        let mut leaving = None;
+        let mut step = f64::INFINITY;
+        for m in 0..3 {
+            if parts[m] > PIVOT * size && self.weights[m] / parts[m] < step {
+                (step, leaving) = (self.weights[m] / parts[m], Some(m));
+            }
+        }
+        let Some(leaving) = leaving else {
+            return Pivot::NoPointLeft(parts.map(|part| (-part).max(0.0)));
+        };
+        for m in 0..3 {
+            self.weights[m] = (self.weights[m] - step * parts[m]).max(0.0);
+        }
+        self.basis[leaving] = entering;
+        self.weights[leaving] = step;
+        Pivot::Made
+    }
+
+    /// The value at the basis, with the bound of its weights.
+    fn value(&self, [x, y, _]: [f64; 3]) -> Value {
+        let mut weights = [0, 1, 2].map(|m| self.row_weight(self.basis[m], self.weights[m]));
+        let sum: f64 = weights.iter().map(|&(row, y)| y * self.rows[row].w).sum();
+        weights.iter_mut().for_each(|(_, y)| *y /= sum);
+        let (x, y) = (x.clamp(0.0, 1.0), y.clamp(0.0, 1.0));
+        let rest = (1.0 - x - y).max(0.0);
+        let total = x + y + rest;
+        Value {
+            bound: self.greatest_column(&weights),
+            point: [x / total, y / total, rest / total],
+            weights,
+        }
+    }
+
+    /// The proof that no point is left, where the weights of the basis beside the entering row give one.
+    fn no_point(&self, entering: usize, basis_weights: [f64; 3]) -> Option<Value> {
+        let entering = entering.checked_sub(3)?;
+        let mut weights = [(entering, 1.0), (0, 0.0), (0, 0.0)];
+        let others = (0..3)
+            .map(|m| self.row_weight(self.basis[m], basis_weights[m]))
+            .filter(|&(row, y)| y > 0.0 && self.rows[row].w == 0.0);
+        weights[1..]
+            .iter_mut()
+            .zip(others)
+            .for_each(|(slot, other)| *slot = other);
+        let is_shown = self.rows[entering].w == 0.0 && self.greatest_column(&weights) < 0.0;
+        is_shown.then_some(Value {
+            bound: f64::NEG_INFINITY,
+            point: [1.0 / 3.0; 3],
+            weights,
+        })
+    }
+
+    fn row_weight(&self, constraint: usize, weight: f64) -> (usize, f64) {
+        if constraint >= 3 {
+            (constraint - 3, weight)
+        } else {
+            (0, 0.0)
+        }
+    }
+
+    /// max_k sum_i y_i d_i[k].
+    fn greatest_column(&self, weights: &[(usize, f64); 3]) -> f64 {
+        let column = |k: usize| {
+            weights
+                .iter()
+                .map(|&(row, y)| y * self.rows[row].d[k])
+                .sum::<f64>()
+        };
+        column(0).max(column(1)).max(column(2))
+    }
+}
+
+/// What became of a pivot.
+enum Pivot {
+    Made,
+    /// No weight of the basis can make way: the weights beside the entering constraint that may show it.
+    NoPointLeft([f64; 3]),
+}
+
+fn size(row: [f64; 3]) -> f64 {
+    row[0].abs().max(row[1].abs()).max(row[2].abs())
+}
+
+/// The columns of the inverse of the 3 × 3 matrix whose rows are the left sides of a, b and c.
+fn inverse_columns(a: Constraint, b: Constraint, c: Constraint) -> [[f64; 3]; 3] {
+    let cross = |u: Constraint, v: Constraint| {
+        [
+            u.q * v.e - u.e * v.q,
+            u.e * v.p - u.p * v.e,
+            u.p * v.q - u.q * v.p,
+        ]
+    };
+    let (bc, ca, ab) = (cross(b, c), cross(c, a), cross(a, b));
+    let det = a.p * bc[0] + a.q * bc[1] + a.e * bc[2];
+    [bc, ca, ab].map(|column| column.map(|v| v / det))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// The greatest value on a fine grid of the simplex: never above the true one.
+    fn on_grid(rows: &[GameRow]) -> f64 {
+        let n = 60;
+        let points = (0..=n).flat_map(|i| {
+            (0..=n - i).map(move |j| [i, j, n - i - j].map(|k| f64::from(k) / f64::from(n)))
+        });
+        points
+            .map(|l| at(rows, l))
+            .fold(f64::NEG_INFINITY, f64::max)
+    }
+
+    fn at(rows: &[GameRow], l: [f64; 3]) -> f64 {
+        let slack = |row: &GameRow| (0..3).map(|k| l[k] * row.d[k]).sum::<f64>();
+        let limit = |row: &GameRow| match row.w {
+            0.0 if slack(row) < -1e-12 => f64::NEG_INFINITY,
+            0.0 => f64::INFINITY,
+            w => slack(row) / w,
+        };
+        rows.iter().map(limit).fold(f64::INFINITY, f64::min)
+    }
+
+    fn game(rows: &[GameRow]) -> Game {
+        let mut game = Game::new(rows[0]);
+        rows[1..].iter().for_each(|&row| assert!(game.push(row)));
+        game
+    }
+
+    #[track_caller]
+    fn check(rows: &[([f64; 3], f64)], expected: f64) {
+        let rows: Vec<GameRow> = rows.iter().map(|&(d, w)| GameRow { d, w }).collect();
+        let found = game(&rows).solve();
+        assert!(
+            (found.bound - expected).abs() < 1e-9,
+            "bound {} is not {expected}",
+            found.bound
+        );
+        assert!(
+            (at(&rows, found.point) - expected).abs() < 1e-9,
+            "the point {:?} does not reach it",
+            found.point
+        );
+        assert!(on_grid(&rows) <= found.bound + 1e-12);
+    }
+
+    #[test]
+    fn one_row_takes_its_greatest_entry() {
+        check(&[([1.0, 5.0, 2.0], 2.0)], 2.5);
+    }
+
+    #[test]
+    fn two_rows_balance() {
+        check(&[([0.0, 4.0, 0.0], 1.0), ([2.0, 0.0, 2.0], 1.0)], 4.0 / 3.0);
+    }
+
+    #[test]
+    fn three_rows_of_a_triangle_meet_at_the_incentre() {
+        // Distances of the corners of a 3-4-5 triangle from the opposite sides: 3, 4 and 2.4; inradius 1.
+        check(
+            &[
+                ([3.0, 0.0, 0.0], 1.0),
+                ([0.0, 4.0, 0.0], 1.0),
+                ([0.0, 0.0, 2.4], 1.0),
+            ],
+            1.0,
+        );
+    }
+
+    #[test]
+    fn equal_and_dominated_rows_change_nothing() {
+        let [a, b, c] = [
+            ([3.0, 0.0, 0.0], 1.0),
+            ([0.0, 4.0, 0.0], 1.0),
+            ([0.0, 0.0, 2.4], 1.0),
+        ];
+        check(&[a, a, b, ([9.0, 9.0, 9.0], 1.0), c, c], 1.0);
+    }
+
+    #[test]
+    fn a_row_without_weight_confines_the_point() {
+        // r <= l_1 · 4, and the point must keep l_1 <= 1/4: value 1.
+        check(&[([0.0, 4.0, 0.0], 1.0), ([1.0, -3.0, 1.0], 0.0)], 1.0);
+    }
+
+    #[test]
+    fn rows_that_leave_no_point_are_shown_by_their_weights() {
+        let rows = [
+            ([0.0, 4.0, 0.0], 1.0),
+            ([2.0, -3.0, -3.0], 0.0),
+            ([-4.0, 1.0, -2.0], 0.0),
+        ];
+        let rows = rows.map(|(d, w)| GameRow { d, w });
+        let found = game(&rows).solve();
+        assert_eq!(found.bound, f64::NEG_INFINITY);
+        let column = |k: usize| {
+            found
+                .weights
+                .iter()
+                .map(|&(row, y)| y * rows[row].d[k])
+                .sum::<f64>()
+        };
+        assert!(
+            found
+                .weights
+                .iter()
+                .all(|&(row, y)| y == 0.0 || rows[row].w == 0.0)
+        );
+        assert!((0..3).all(|k| column(k) < 0.0), "{:?}", found.weights);
+    }
+
+    #[test]
+    fn a_full_game_refuses_further_rows() {
+        let row = GameRow {
+            d: [1.0; 3],
+            w: 1.0,
+        };
+        let mut game = Game::new(row);
+        let accepted = (1..2 * MAX_ROWS).filter(|_| game.push(row)).count();
+        assert_eq!((accepted, game.n_rows()), (MAX_ROWS - 1, MAX_ROWS));
+    }
+}

@@ -1,0 +1,238 @@
+//! Climbing from a centre to the best one near it, and the disc round it that is thereby settled.
+//!
+//! Each row's condition is convex in the centre, so its tangent at the present centre lies below it: the linear program with
+//! the tangents is an inner approximation, and its answer is never worse. Repeating it is Newton's method on the rows
+//! that bind.
+
+use super::index::{RowIndex, game_weight};
+use super::piece::{Handed, Triangle, Weighted};
+use crate::geom::{Point, Vec2};
+use crate::limits::Row;
+use crate::lp::game::{Game, GameRow, MAX_ROWS};
+
+/// Rounds of tangents. Straight features need one, curved ones four or five; beyond lie circles creeping along ties.
+const MAX_ROUNDS: usize = 12;
+
+/// A step is the last when it gains less than this, relative to the radius: ten times the rounding of a distance.
+const LAST_GAIN: f64 = 1e-15 * 10.0;
+
+/// First reach of a step, in radii; long enough to cross a room, short enough that most steps stay in it.
+const FIRST_REACH: f64 = 4.0;
+
+/// Reach of a step that cannot leave the region: an equilateral triangle of this inradius, in radii, lies in the circle.
+const SAFE_REACH: f64 = 0.499;
+
+/// A centre in the region with the radius allowed there and the rows that carry it.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Spot {
+    pub centre: Point,
+    pub radius: f64,
+    pub carrying: [Weighted; 3],
+}
+
+/// A disc in which no centre allows more than `radius`, by the rows that hold its own centre.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct SettledDisc {
+    pub centre: Point,
+    pub reach: f64,
+    pub radius: f64,
+    pub rows: [u32; 3],
+}
+
+impl SettledDisc {
+    /// Whether all of a triangle lies in the disc.
+    pub fn holds(&self, t: &Triangle) -> bool {
+        let reach2 = self.reach * self.reach;
+        t.iter().all(|c| c.distance2(self.centre) < reach2)
+    }
+}
+
+/// Climbs from `start`, which lies in the region and allows `radius` > 0.
+///
+/// What comes back: a centre that allows at least as much, with the rows whose tangents carry the last step.
+/// Method: successive linear programs with tangents, rows found by the index; a step that leaves the region is taken again
+/// with a reach that cannot.
+/// Tolerance: ends when a step gains less than 1e-14 of the radius, or after 12 rounds.
+pub(super) fn climb(index: &RowIndex, start: Point, radius: f64, handed: &Handed) -> Spot {
+    let mut spot = Spot {
+        centre: start,
+        radius,
+        carrying: [(0, 0.0); 3],
+    };
+    let mut rows = *handed;
+    let mut reach = FIRST_REACH;
+    for _ in 0..MAX_ROUNDS {
+        let step = step(index, &spot, &rows, reach * spot.radius);
+        let gain = step.radius - spot.radius;
+        if reach > SAFE_REACH
+            && step.centre.distance(spot.centre) >= spot.radius
+            && !index.is_in_region(step.centre)
+        {
+            reach = SAFE_REACH;
+            continue;
+        }
+        spot.carrying = step.carrying;
+        let carrying = step
+            .carrying
+            .iter()
+            .filter(|(_, y)| *y > 0.0)
+            .map(|&(row, _)| row);
+        rows = Handed::of(carrying.chain(rows.as_slice().iter().copied()));
+        if gain > 0.0 {
+            (spot.centre, spot.radius) = (step.centre, step.radius);
+        }
+        if gain <= LAST_GAIN * spot.radius {
+            break;
+        }
+    }
+    spot
+}
+
+/// The best centre by the tangents at the spot, within a triangle of inradius `reach_m` about it.
+fn step(index: &RowIndex, spot: &Spot, handed: &Handed, reach_m: f64) -> Spot {
+    let domain = [(0.0, 2.0), (-3f64.sqrt(), -1.0), (3f64.sqrt(), -1.0)]
+        .map(|(x, y)| Vec2::new(x, y) * reach_m);
+    let mut rows = [0u32; MAX_ROWS];
+    let mut game: Option<Game> = None;
+    let here = index.least(spot.centre).row;
+    let known = std::iter::once(here).chain(handed.as_slice().iter().copied());
+    for row in known {
+        add_tangent(index, spot.centre, &domain, row, &mut rows, &mut game);
+    }
+    let Some(mut game) = game else { return *spot };
+    loop {
+        let value = game.solve();
+        let offset = [0, 1, 2].map(|k| domain[k] * value.point[k]);
+        let centre = spot.centre + offset[0] + offset[1] + offset[2];
+        let least = index.least(centre);
+        let n = game.n_rows();
+        let is_new = !rows[..n].contains(&least.row);
+        if is_new && n < MAX_ROWS && least.radius < value.bound {
+            let mut more = Some(game);
+            add_tangent(index, spot.centre, &domain, least.row, &mut rows, &mut more);
+            let Some(grown) = more else { return *spot };
+            game = grown;
+            if game.n_rows() > n {
+                continue;
+            }
+        }
+        let carrying = value.weights.map(|(i, y)| (rows[i], y));
+        return Spot {
+            centre,
+            radius: least.radius,
+            carrying,
+        };
+    }
+}
+
+/// Adds the tangent of a row at `centre` over the triangle `domain` about it; a row that has none there is left out, and so
+/// is one without weight while the game has no row.
+fn add_tangent(
+    index: &RowIndex,
+    centre: Point,
+    domain: &[Vec2; 3],
+    row: u32,
+    rows: &mut [u32; MAX_ROWS],
+    game: &mut Option<Game>,
+) {
+    let n = game.as_ref().map_or(0, Game::n_rows);
+    if rows[..n].contains(&row) {
+        return;
+    }
+    let Some(entry) = tangent(index.row(row), centre, domain) else {
+        return;
+    };
+    let is_added = match game {
+        Some(game) => game.push(entry),
+        None if entry.w > 0.0 => {
+            *game = Some(Game::new(entry));
+            true
+        }
+        None => false,
+    };
+    if is_added {
+        rows[n] = row;
+    }
+}
+
+fn tangent(row: &Row, centre: Point, domain: &[Vec2; 3]) -> Option<GameRow> {
+    let nearest = row.feature.nearest(centre);
+    let (value, slope) = match row.otherwise {
+        None => (nearest.distance - row.s, 1.0),
+        Some(_) => (
+            row.radius_at(nearest.distance),
+            row.slope_at(nearest.distance),
+        ),
+    };
+    let d = domain.map(|v| value + slope * nearest.away.dot(v));
+    d.iter().all(|v| v.is_finite()).then(|| GameRow {
+        d,
+        w: game_weight(row),
+    })
+}
+
+/// The disc that the rows at a spot settle, where three of them hold it from all sides.
+///
+/// Method: with active rows' nearest points q_i at distances d_i in directions u_i, and k the distance of the origin from
+/// the border of the hull of the u_i, no centre within 2 k min d_i allows more than the greatest of the rows' radii at
+/// the spot: for any v some u_i · v <= -k |v|, and |c + v - q_i| <= d_i + u_i · v + |v|² / (2 d_i).
+/// A row without weight settles nothing here.
+pub(super) fn settled_disc(index: &RowIndex, spot: &Spot) -> Option<SettledDisc> {
+    let rows = spot.carrying.map(|(row, _)| row);
+    if spot
+        .carrying
+        .iter()
+        .any(|&(row, y)| y <= 0.0 || index.row(row).w <= 0.0)
+    {
+        return None;
+    }
+    let nearest = rows.map(|row| index.row(row).feature.nearest(spot.centre));
+    let k = hull_margin(nearest.map(|n| n.away))?;
+    let least = nearest
+        .iter()
+        .map(|n| n.reach)
+        .fold(f64::INFINITY, f64::min);
+    let radius = (0..3)
+        .map(|i| index.row(rows[i]).radius_at(nearest[i].distance))
+        .fold(f64::NEG_INFINITY, f64::max);
+    // One part in 1e9 off: far above rounding, far below what would matter to a search.
+    let reach = 2.0 * k * least * (1.0 - 1e-9);
+    (k > 0.0 && reach > 0.0).then_some(SettledDisc {
+        centre: spot.centre,
+        reach,
+        radius,
+        rows,
+    })
+}
+
+/// Distance of the origin from the border of the triangle of three unit vectors, `None` where it lies outside.
+fn hull_margin(u: [Vec2; 3]) -> Option<f64> {
+    let turn = (u[1] - u[0]).cross(u[2] - u[0]).signum();
+    let margin = |k: usize| {
+        let side = u[(k + 1) % 3] - u[k];
+        turn * side.cross(-u[k]) / side.length()
+    };
+    let least = margin(0).min(margin(1)).min(margin(2));
+    (least > 0.0).then_some(least)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_hull_margin_of_three_even_directions_is_one_half() {
+        let at = |deg: f64| Vec2::new(deg.to_radians().cos(), deg.to_radians().sin());
+        let margin = hull_margin([at(90.0), at(210.0), at(330.0)]);
+        assert!((margin.expect("the origin lies inside") - 0.5).abs() < 1e-12);
+        assert!(
+            (hull_margin([at(90.0), at(330.0), at(210.0)]).expect("either order") - 0.5).abs()
+                < 1e-12
+        );
+        assert_eq!(
+            hull_margin([at(0.0), at(60.0), at(120.0)]),
+            None,
+            "all on one side"
+        );
+    }
+}

@@ -1,0 +1,142 @@
+//! Placement: the largest circle that clears every limit, with a proof that no larger one fits.
+//!
+//! The certified search ([`search`]) covers the lot with triangles ([`roots`]), bounds each by a little linear program
+//! ([`piece`]), climbs from what it meets ([`climb`]) and ends when no piece can hold a better centre. What leaves this
+//! module has passed [`verify`], which shares no code with the search.
+
+mod climb;
+mod index;
+mod piece;
+mod record;
+mod roots;
+mod search;
+mod slide;
+mod verify;
+
+pub use search::Effort;
+pub use verify::{VerifyError, verified_radius};
+
+use crate::geom::Point;
+use crate::limits::Limits;
+use crate::site::{Site, SiteError};
+use index::RowIndex;
+use record::Record;
+use search::{End, Found, Search};
+
+/// How a placement came out.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Status {
+    Fits,
+    NoRoom,
+    /// Work ended at the cap; the best found and the bound stand.
+    CapHit,
+    Cancelled,
+}
+
+/// A centre and diameter, and how large any other could be.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Placement {
+    pub status: Status,
+    /// The circle found, verified; `None` where there is none.
+    pub circle: Option<Circle>,
+    /// No centre allows a greater diameter than this, m.
+    pub upper_m: f64,
+    /// Pieces looked at.
+    pub n_pieces: usize,
+}
+
+/// A verified circle.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Circle {
+    pub centre: Point,
+    pub diameter_m: f64,
+    /// How far the centre can go with nothing lost, where the best centre is not unique; `centre` is its middle.
+    pub slide: Option<[Point; 2]>,
+}
+
+/// Why there is no placement to speak of.
+#[derive(Clone, Debug, PartialEq, thiserror::Error)]
+pub enum PlaceError {
+    #[error(transparent)]
+    Site(#[from] SiteError),
+    #[error(transparent)]
+    Verify(#[from] VerifyError),
+}
+
+/// Bounds are raised by this, relative to the size of the coordinates, for the rounding of the distances they are made of:
+/// a few units in the last place each.
+const BOUND_ROUNDING: f64 = 4e-15;
+
+/// The largest circle of a site, with the site's limits as its rows have it.
+///
+/// What comes back: a verified circle, and a bound on the diameter of every other; their difference is at most
+/// `effort.gap_m` unless the cap was hit or the coordinates' own rounding is larger.
+/// Method: branch and bound over triangles, each bounded by a linear program on the rows that matter (module head).
+/// Convention: site plane, metres. `snap` moves a centre to one that can be written down; it is applied before the circle
+/// is verified.
+/// Degenerate input: where no centre clears all limits the status says so, with the bound.
+/// Tolerance: `effort`. Cost: about O(n log n) for n rows, more where there are many near ties.
+///
+/// # Errors
+/// A site that has no limits to speak of, or a circle that did not pass verification.
+pub fn largest(
+    limits: &Limits,
+    site: &Site,
+    effort: Effort,
+    snap: &dyn Fn(Point) -> Point,
+) -> Result<Placement, PlaceError> {
+    let (found, _, index) = searched(limits, site, effort, false);
+    finished(&found, &index, snap)
+}
+
+fn searched<'a>(
+    limits: &'a Limits,
+    site: &Site,
+    effort: Effort,
+    keep_record: bool,
+) -> (Found, Option<Record>, RowIndex<'a>) {
+    let index = RowIndex::new(limits);
+    let roots = roots::roots(site.lot.area(), limits);
+    let record = keep_record.then(|| Record::new(roots.triangles.len()));
+    let (found, record) = Search::new(&index, effort, record).run(&roots);
+    (found, record, index)
+}
+
+/// Turns what a search found into a verified placement.
+fn finished(
+    found: &Found,
+    index: &RowIndex,
+    snap: &dyn Fn(Point) -> Point,
+) -> Result<Placement, PlaceError> {
+    let limits = index.limits();
+    let bounds = limits
+        .region
+        .boundary()
+        .iter()
+        .fold(crate::geom::Bounds::EMPTY, |b, s| b.with(s.a));
+    let size = bounds.extent() + bounds.centre().to_vec2().length();
+    let upper_m = 2.0 * (found.upper + BOUND_ROUNDING * size);
+    let circle = found.best.map(|spot| {
+        let slide = slide::slide(index, &spot);
+        let centre = snap(slide.map_or(spot.centre, |[from, to]| from.midpoint(to)));
+        let claimed = index.least(centre).radius.min(spot.radius);
+        let radius = verified_radius(limits, centre, claimed)?;
+        Ok::<_, PlaceError>(Circle {
+            centre,
+            diameter_m: 2.0 * radius,
+            slide,
+        })
+    });
+    let status = match found.end {
+        End::Cancelled => Status::Cancelled,
+        End::Cap => Status::CapHit,
+        End::Done if circle.is_some() => Status::Fits,
+        End::Done => Status::NoRoom,
+    };
+    Ok(Placement {
+        status,
+        circle: circle.transpose()?,
+        upper_m,
+        n_pieces: found.n_pieces,
+    })
+}

@@ -1,0 +1,103 @@
+//! The roots of a search: triangles that together cover the region.
+//!
+//! A convex lot in half-planes has one triangle round its box, since a half-plane allows nothing outside. Other lots are cut
+//! into triangles on their own corners; a lot of many corners that fills its box well is covered by the box's two triangles
+//! instead, because a triangulation would cost more than the search.
+
+use super::piece::Triangle;
+use crate::geom::{Area, Bounds, Point, Polygon, triangulate};
+use crate::limits::{Limits, LotRows};
+
+/// How the roots were made; what a check needs to see that they cover the region.
+#[derive(Clone, Debug, PartialEq)]
+pub(super) enum Cover {
+    /// One triangle round the lot's box.
+    Round,
+    /// Two triangles of the lot's box.
+    Box,
+    /// Triangles on the lot's own corners: for each part, indices into its corners, outer ring first, then the holes.
+    Triangles(Vec<Vec<[u32; 3]>>),
+}
+
+/// The triangles, and how they were made.
+pub(super) struct Roots {
+    pub triangles: Vec<Triangle>,
+    pub cover: Cover,
+}
+
+/// A lot of fewer corners than this is always cut on its corners: ear clipping then costs next to nothing.
+const FEW_CORNERS: usize = 24;
+
+/// A box is preferred while its area, in squares of (area / perimeter), stays under this many per corner. Area / perimeter
+/// is about half the room's radius, and a search over a box visits a few pieces per such square; from timing lots of 24 to
+/// 20,000 corners, where 2 and 8 were slower.
+const BOX_SQUARES_PER_CORNER: f64 = 4.0;
+
+/// The roots for the limits of a lot.
+pub(super) fn roots(lot: &Area, limits: &Limits) -> Roots {
+    let bounds = lot.bounds();
+    if limits.lot_rows == LotRows::HalfPlanes {
+        return Roots {
+            triangles: vec![round(bounds)],
+            cover: Cover::Round,
+        };
+    }
+    let boxed = || Roots {
+        triangles: box_halves(bounds).to_vec(),
+        cover: Cover::Box,
+    };
+    if fills_its_box(lot, bounds) {
+        return boxed();
+    }
+    match lot
+        .parts
+        .iter()
+        .map(triangulate::triangulate)
+        .collect::<Option<Vec<_>>>()
+    {
+        Some(cut) => Roots {
+            triangles: on_corners(&lot.parts, &cut),
+            cover: Cover::Triangles(cut),
+        },
+        None => boxed(),
+    }
+}
+
+fn fills_its_box(lot: &Area, bounds: Bounds) -> bool {
+    let n = lot.n_segments();
+    if n < FEW_CORNERS {
+        return false;
+    }
+    let perimeter: f64 = lot.rings().map(|r| r.perimeter()).sum();
+    let half_width = lot.area_m2() / perimeter;
+    bounds.width() * bounds.height() < BOX_SQUARES_PER_CORNER * n as f64 * half_width * half_width
+}
+
+/// The triangles of each part, by its corners.
+pub(super) fn on_corners(parts: &[Polygon], cut: &[Vec<[u32; 3]>]) -> Vec<Triangle> {
+    let mut triangles = Vec::with_capacity(cut.iter().map(Vec::len).sum());
+    for (part, cut) in parts.iter().zip(cut) {
+        let corners = triangulate::corners_of(part);
+        triangles.extend(cut.iter().map(|t| t.map(|i| corners[i as usize])));
+    }
+    triangles
+}
+
+/// A triangle with room round the box: its legs are twice the box's sides and half a side longer each, so that rounding
+/// never leaves a corner of the box outside.
+pub(super) fn round(b: Bounds) -> Triangle {
+    let (w, h) = (b.width(), b.height());
+    let corner = Point::new(b.min.x - 0.25 * w, b.min.y - 0.25 * h);
+    [
+        corner,
+        Point::new(corner.x + 3.0 * w, corner.y),
+        Point::new(corner.x, corner.y + 3.0 * h),
+    ]
+}
+
+/// The box in two triangles.
+pub(super) fn box_halves(b: Bounds) -> [Triangle; 2] {
+    let (ne, sw) = (b.max, b.min);
+    let (nw, se) = (Point::new(sw.x, ne.y), Point::new(ne.x, sw.y));
+    [[sw, se, ne], [sw, ne, nw]]
+}

@@ -1,0 +1,283 @@
+//! The certified search: pieces with bounds, the best bound first, bisected until none may hold a better centre.
+//!
+//! A piece is dropped when its bound is no better than what was found, when a settled disc holds it, or when it lies
+//! outside the region. What is left at the end bounds every centre of the lot.
+
+use std::cmp::Ordering;
+use std::collections::BinaryHeap;
+use std::sync::atomic::{AtomicBool, Ordering as Memory};
+
+use super::climb::{SettledDisc, Spot, climb, settled_disc};
+use super::index::{Least, RowIndex, game_weight};
+use super::piece::{Handed, Looked, Piece, Triangle, halves, longest_side2, look};
+use super::record::{Leaf, Record};
+use super::roots::{Cover, Roots};
+use crate::geom::Point;
+
+/// What a search may use, and when it is content.
+#[derive(Clone, Copy, Debug)]
+pub struct Effort<'a> {
+    /// Greatest gap between the diameter and its bound, m.
+    pub gap_m: f64,
+    /// Most pieces looked at.
+    pub max_pieces: usize,
+    /// Set from elsewhere to end the search early.
+    pub cancel: Option<&'a AtomicBool>,
+}
+
+impl Default for Effort<'_> {
+    /// A gap of 1e-9 m and two million pieces: some seconds, which no lot but a hostile one takes.
+    fn default() -> Self {
+        Effort {
+            gap_m: 1e-9,
+            max_pieces: 2_000_000,
+            cancel: None,
+        }
+    }
+}
+
+/// How a search ended.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum End {
+    Done,
+    Cap,
+    Cancelled,
+}
+
+/// What a search found.
+pub(super) struct Found {
+    pub best: Option<Spot>,
+    /// No centre of the region allows more, m.
+    pub upper: f64,
+    pub n_pieces: usize,
+    pub end: End,
+    /// Spots climbed to on the way, each better than those before.
+    pub spots: Vec<Spot>,
+}
+
+/// A share of the gap in which the search drops pieces, so that rounding of bounds has room in the rest. In radii: half of
+/// the gap in diameter.
+const DROP_SHARE: f64 = 0.5 * 0.8;
+
+/// Pieces between two looks at the cancel flag.
+const CANCEL_EVERY: usize = 256;
+
+/// A search in progress.
+pub(super) struct Search<'a> {
+    index: &'a RowIndex<'a>,
+    effort: Effort<'a>,
+    may_be_outside: bool,
+    heap: BinaryHeap<ByBound>,
+    discs: Vec<SettledDisc>,
+    best: Option<Spot>,
+    spots: Vec<Spot>,
+    dropped: f64,
+    n_pieces: usize,
+    record: Option<Record>,
+}
+
+/// The order of the heap: greatest bound first, ties in the order of looking.
+struct ByBound(Piece, usize);
+
+impl PartialEq for ByBound {
+    fn eq(&self, other: &Self) -> bool {
+        self.cmp(other) == Ordering::Equal
+    }
+}
+impl Eq for ByBound {}
+impl PartialOrd for ByBound {
+    fn partial_cmp(&self, other: &Self) -> Option<Ordering> {
+        Some(self.cmp(other))
+    }
+}
+impl Ord for ByBound {
+    fn cmp(&self, other: &Self) -> Ordering {
+        self.0
+            .bound
+            .total_cmp(&other.0.bound)
+            .then(other.1.cmp(&self.1))
+    }
+}
+
+impl<'a> Search<'a> {
+    pub fn new(index: &'a RowIndex<'a>, effort: Effort<'a>, record: Option<Record>) -> Search<'a> {
+        Search {
+            index,
+            effort,
+            may_be_outside: false,
+            heap: BinaryHeap::new(),
+            discs: Vec::new(),
+            best: None,
+            spots: Vec::new(),
+            dropped: 0.0,
+            n_pieces: 0,
+            record,
+        }
+    }
+
+    /// Runs to the end.
+    pub fn run(mut self, roots: &Roots) -> (Found, Option<Record>) {
+        self.may_be_outside = roots.cover == Cover::Box || self.index.limits().region.is_cut();
+        self.start(roots);
+        let mut end = End::Done;
+        while let Some(ByBound(piece, _)) = self.heap.pop() {
+            if piece.bound <= self.enough() {
+                self.drop_bounded(&piece);
+                continue;
+            }
+            if let Some(early) = self.must_end() {
+                self.drop_bounded(&piece);
+                end = early;
+                break;
+            }
+            let nodes = self.record.as_mut().map_or([0; 2], |r| r.split(piece.node));
+            for (half, node) in halves(&piece.corners).into_iter().zip(nodes) {
+                self.take(half, &piece.handed, piece.bound, node);
+            }
+        }
+        for ByBound(piece, _) in std::mem::take(&mut self.heap) {
+            self.drop_bounded(&piece);
+        }
+        let upper = self.best.map_or(0.0, |b| b.radius).max(self.dropped);
+        (
+            Found {
+                best: self.best,
+                upper,
+                n_pieces: self.n_pieces,
+                end,
+                spots: self.spots,
+            },
+            self.record,
+        )
+    }
+
+    /// Takes in the roots, the largest first, so that the first spots climbed to are good ones.
+    fn start(&mut self, roots: &Roots) {
+        let mut order: Vec<(f64, u32)> = (0..)
+            .zip(&roots.triangles)
+            .map(|(i, t)| (longest_side2(t), i))
+            .collect();
+        order.sort_unstable_by(|a, b| b.0.total_cmp(&a.0).then(a.1.cmp(&b.1)));
+        let on_boundary = matches!(roots.cover, Cover::Triangles(_));
+        for (side2, i) in order {
+            let t = roots.triangles[i as usize];
+            // Every centre lies within side / √3 of a corner, and corners on the boundary allow nothing.
+            if on_boundary && (side2 / 3.0).sqrt() <= self.best.map_or(0.0, |b| b.radius) {
+                self.note(i, Leaf::NearCorners);
+                continue;
+            }
+            let seed = self.weighty_row(centroid(&t));
+            self.take(t, &Handed::of([seed]), f64::INFINITY, i);
+        }
+    }
+
+    /// Looks at a triangle: takes what it offers, drops it or keeps it for bisection.
+    fn take(&mut self, corners: Triangle, handed: &Handed, parent: f64, node: u32) {
+        self.n_pieces += 1;
+        if let Some(i) = self.discs.iter().position(|d| d.holds(&corners)) {
+            self.note(node, Leaf::Settled(i as u32));
+            return;
+        }
+        let looked = look(self.index, &corners, handed, self.enough());
+        let mut is_outside = false;
+        if looked.least.radius > self.best.map_or(0.0, |b| b.radius) {
+            is_outside = !self.offer(&looked);
+        }
+        let bound = looked.bound.min(parent);
+        let piece = Piece {
+            corners,
+            bound,
+            weights: looked.weights,
+            handed: looked.handed,
+            node,
+        };
+        if bound <= self.enough() {
+            self.drop_bounded(&piece);
+        } else if is_outside && self.clears_boundary(&corners, looked.point) {
+            self.note(node, Leaf::Outside);
+        } else {
+            self.heap.push(ByBound(piece, self.n_pieces));
+        }
+    }
+
+    /// Climbs from a piece's point if it lies in the region; `false` if it does not.
+    fn offer(&mut self, looked: &Looked) -> bool {
+        if self.may_be_outside && !self.index.is_in_region(looked.point) {
+            return false;
+        }
+        let spot = climb(
+            self.index,
+            looked.point,
+            looked.least.radius,
+            &looked.handed,
+        );
+        self.best = Some(spot);
+        self.spots.push(spot);
+        if let Some(disc) = settled_disc(self.index, &spot)
+            && disc.radius <= self.enough()
+        {
+            if let Some(record) = &mut self.record {
+                record.disc(&disc);
+            }
+            self.discs.push(disc);
+        }
+        true
+    }
+
+    /// Whether no boundary comes as near to `p` as the triangle's farthest corner, so that the triangle lies on p's side.
+    fn clears_boundary(&self, corners: &Triangle, p: Point) -> bool {
+        let farthest = corners
+            .iter()
+            .map(|c| c.distance2(p))
+            .fold(0.0, f64::max)
+            .sqrt();
+        // Distances round by parts in 1e16; one in 1e12 keeps the claim on the safe side.
+        let needed = farthest * (1.0 + 1e-12);
+        self.index.boundary_distance(p, 2.0 * needed) > needed
+    }
+
+    /// The radius a piece must promise to be worth more work.
+    fn enough(&self) -> f64 {
+        self.best.map_or(0.0, |b| b.radius) + DROP_SHARE * self.effort.gap_m
+    }
+
+    fn must_end(&self) -> Option<End> {
+        if self.n_pieces >= self.effort.max_pieces {
+            return Some(End::Cap);
+        }
+        let is_cancelled = || {
+            self.effort
+                .cancel
+                .is_some_and(|flag| flag.load(Memory::Relaxed))
+        };
+        (self.n_pieces % CANCEL_EVERY < 2 && is_cancelled()).then_some(End::Cancelled)
+    }
+
+    fn drop_bounded(&mut self, piece: &Piece) {
+        self.dropped = self.dropped.max(piece.bound);
+        self.note(piece.node, Leaf::Bounded(piece.weights));
+    }
+
+    fn note(&mut self, node: u32, leaf: Leaf) {
+        if let Some(record) = &mut self.record {
+            record.leaf(node, leaf);
+        }
+    }
+
+    /// The row that allows least at a place, or a boundary row where that one has no weight.
+    fn weighty_row(&self, c: Point) -> u32 {
+        let Least { row, .. } = self.index.least(c);
+        if game_weight(self.index.row(row)) > 0.0 {
+            row
+        } else {
+            0
+        }
+    }
+}
+
+fn centroid(t: &Triangle) -> Point {
+    Point::new(
+        (t[0].x + t[1].x + t[2].x) / 3.0,
+        (t[0].y + t[1].y + t[2].y) / 3.0,
+    )
+}
