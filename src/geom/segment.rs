@@ -37,8 +37,23 @@ impl Segment {
         }
     }
 
+    /// Squared distance from p, m².
+    pub fn distance2(self, p: Point) -> f64 {
+        let (d, v) = (self.vector(), p - self.a);
+        let along = v.dot(d);
+        let length2 = d.length2();
+        if along <= 0.0 || length2 == 0.0 {
+            v.length2()
+        } else if along >= length2 {
+            p.distance2(self.b)
+        } else {
+            let across = d.cross(v);
+            across * across / length2
+        }
+    }
+
     pub fn distance(self, p: Point) -> f64 {
-        p.distance(self.nearest(p))
+        self.distance2(p).sqrt()
     }
 
     /// Where the two closed segments meet, exactly decided, the place itself rounded: `None` where they do not; for

@@ -58,8 +58,8 @@ impl<S: Summary> RunTree<S> {
         }
     }
 
-    /// Visits the items in an order that makes good bounds early: a node is entered only while `lower` of it is below
-    /// `best`, and `visit` looks at one item and may lower `best`.
+    /// Visits items that may be nearest: a node is entered only while `lower` of it is below `best`, and `visit` looks at one
+    /// item and may lower `best`. The sooner `best` is good, the fewer are visited.
     pub fn nearest(
         &self,
         best: &mut f64,
@@ -84,30 +84,14 @@ impl<S: Summary> RunTree<S> {
         lower: &impl Fn(&Node<S>) -> f64,
         visit: &mut impl FnMut(usize, &mut f64),
     ) {
-        let mut bounds = [f64::INFINITY; FAN];
-        let mut first = 0;
-        for (k, node) in self.nodes[range.clone()].iter().enumerate() {
-            bounds[k] = lower(node);
-            if bounds[k] < bounds[first] {
-                first = k;
-            }
-        }
-        for turn in 0..range.len() {
-            let k = if turn == 0 {
-                first
-            } else if turn <= first {
-                turn - 1
-            } else {
-                turn
-            };
-            if bounds[k] >= *best {
-                continue;
-            }
-            let children = self.children(level, range.start + k);
-            if level == 0 {
-                children.for_each(|i| visit(i, best));
-            } else {
-                self.nearest_below(level - 1, children, best, lower, visit);
+        for (i, node) in range.clone().zip(&self.nodes[range]) {
+            if lower(node) < *best {
+                let children = self.children(level, i);
+                if level == 0 {
+                    children.for_each(|i| visit(i, best));
+                } else {
+                    self.nearest_below(level - 1, children, best, lower, visit);
+                }
             }
         }
     }

@@ -20,7 +20,8 @@ impl Region {
     /// A building line that does not run from boundary to boundary through one part of the lot.
     pub fn new(lot: &Area, lines: &[BuildingLine]) -> Result<Region, SiteError> {
         let mut boundary: Vec<Segment> = Vec::with_capacity(lot.n_segments());
-        boundary.extend(lot.segments());
+        lot.rings()
+            .for_each(|ring| boundary.extend(ring.segments()));
         let n_lot_segments = boundary.len();
         let (mut line_of, mut cut_off) = (Vec::new(), Vec::new());
         for (i, line) in lines.iter().enumerate() {

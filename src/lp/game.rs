@@ -7,7 +7,7 @@
 //! negative show it.
 
 /// Most rows a game holds; a piece of a lot meets three to six.
-pub const MAX_ROWS: usize = 24;
+pub const MAX_ROWS: usize = 12;
 
 /// Pivots of one solve. Each one lowers the value except at ties, and few rows are there; met only by cycling.
 const MAX_PIVOTS: usize = 64;
@@ -26,6 +26,18 @@ struct Constraint {
     q: f64,
     e: f64,
     h: f64,
+}
+
+impl Constraint {
+    fn of(row: GameRow) -> Constraint {
+        let [d0, d1, d2] = row.d;
+        Constraint {
+            p: d2 - d0,
+            q: d2 - d1,
+            e: row.w,
+            h: d2,
+        }
+    }
 }
 
 /// The three sides of the simplex, which stand before the rows in every game: l_0 >= 0, l_1 >= 0, l_2 >= 0.
@@ -61,6 +73,8 @@ pub struct GameRow {
 #[derive(Clone, Debug)]
 pub struct Game {
     rows: [GameRow; MAX_ROWS],
+    /// The sides of the simplex, then the rows in the plane of the simplex.
+    constraints: [Constraint; 3 + MAX_ROWS],
     n_rows: usize,
     basis: [usize; 3],
     weights: [f64; 3],
@@ -83,13 +97,17 @@ impl Game {
     pub fn new(first: GameRow) -> Game {
         debug_assert!(first.w > 0.0, "the first row bounds r");
         let mut rows = [GameRow::default(); MAX_ROWS];
+        let mut constraints = [Constraint::default(); 3 + MAX_ROWS];
         rows[0] = first;
+        constraints[..3].copy_from_slice(&SIDES);
+        constraints[3] = Constraint::of(first);
         let d = first.d;
         let best = (0..3).fold(0, |best, k| if d[k] > d[best] { k } else { best });
         let others = [(best + 1) % 3, (best + 2) % 3];
         let weights = [1.0, d[best] - d[others[0]], d[best] - d[others[1]]].map(|y| y / first.w);
         Game {
             rows,
+            constraints,
             n_rows: 1,
             basis: [3, others[0], others[1]],
             weights,
@@ -101,12 +119,17 @@ impl Game {
         self.n_rows
     }
 
+    pub fn row(&self, i: usize) -> GameRow {
+        self.rows[i]
+    }
+
     /// Adds a row; `false` when the game is full.
     pub fn push(&mut self, row: GameRow) -> bool {
         if self.n_rows == MAX_ROWS {
             return false;
         }
         self.rows[self.n_rows] = row;
+        self.constraints[3 + self.n_rows] = Constraint::of(row);
         self.n_rows += 1;
         self.scale = self.scale.max(size(row.d));
         true
@@ -128,42 +151,31 @@ impl Game {
     /// assert!((game.solve().bound - 4.0 / 3.0).abs() < 1e-12);
     /// ```
     pub fn solve(&mut self) -> Value {
-        let mut point = self.primal();
         for _ in 0..MAX_PIVOTS {
+            let inverse = self.inverse();
+            let point = self.primal(&inverse);
             let Some(entering) = self.most_broken(point) else {
-                break;
+                return self.value(point);
             };
-            match self.pivot(entering) {
-                Pivot::Made => point = self.primal(),
-                Pivot::NoPointLeft(weights) => {
-                    if let Some(value) = self.no_point(entering, weights) {
-                        return value;
-                    }
-                    break;
-                }
+            if let Pivot::NoPointLeft(weights) = self.pivot(entering, &inverse) {
+                return self
+                    .no_point(entering, weights)
+                    .unwrap_or_else(|| self.value(point));
             }
         }
-        self.value(point)
+        let inverse = self.inverse();
+        self.value(self.primal(&inverse))
     }
 
-    fn constraint(&self, i: usize) -> Constraint {
-        if i < 3 {
-            return SIDES[i];
-        }
-        let GameRow { d: [d0, d1, d2], w } = self.rows[i - 3];
-        Constraint {
-            p: d2 - d0,
-            q: d2 - d1,
-            e: w,
-            h: d2,
-        }
+    fn inverse(&self) -> [[f64; 3]; 3] {
+        let [a, b, c] = self.basis.map(|i| self.constraints[i]);
+        inverse_columns(a, b, c)
     }
 
     /// The point (l_0, l_1, r) where the three constraints of the basis hold with equality.
-    fn primal(&self) -> [f64; 3] {
-        let [a, b, c] = self.basis.map(|i| self.constraint(i));
-        let [ia, ib, ic] = inverse_columns(a, b, c);
-        [0, 1, 2].map(|k| ia[k] * a.h + ib[k] * b.h + ic[k] * c.h)
+    fn primal(&self, inverse: &[[f64; 3]; 3]) -> [f64; 3] {
+        let h = self.basis.map(|i| self.constraints[i].h);
+        [0, 1, 2].map(|k| inverse[0][k] * h[0] + inverse[1][k] * h[1] + inverse[2][k] * h[2])
     }
 
     fn most_broken(&self, [x, y, r]: [f64; 3]) -> Option<usize> {
@@ -171,7 +183,7 @@ impl Game {
         let mut worst = BROKEN * self.scale;
         let mut found = None;
         for i in 3..3 + self.n_rows {
-            let by = excess(self.constraint(i));
+            let by = excess(self.constraints[i]);
             if by > worst && !self.basis.contains(&i) {
                 (worst, found) = (by, Some(i));
             }
@@ -183,10 +195,9 @@ impl Game {
     }
 
     /// Brings `entering` into the basis for the constraint whose weight runs out first.
-    fn pivot(&mut self, entering: usize) -> Pivot {
-        let [a, b, c] = self.basis.map(|i| self.constraint(i));
-        let n = self.constraint(entering);
-        let parts = inverse_columns(a, b, c).map(|col| n.p * col[0] + n.q * col[1] + n.e * col[2]);
+    fn pivot(&mut self, entering: usize, inverse: &[[f64; 3]; 3]) -> Pivot {
+        let n = self.constraints[entering];
+        let parts = inverse.map(|col| n.p * col[0] + n.q * col[1] + n.e * col[2]);
         let size = parts[0].abs().max(parts[1].abs()).max(parts[2].abs());
         let mut leaving = None;
         let mut step = f64::INFINITY;
@@ -281,8 +292,8 @@ fn inverse_columns(a: Constraint, b: Constraint, c: Constraint) -> [[f64; 3]; 3]
         ]
     };
     let (bc, ca, ab) = (cross(b, c), cross(c, a), cross(a, b));
-    let det = a.p * bc[0] + a.q * bc[1] + a.e * bc[2];
-    [bc, ca, ab].map(|column| column.map(|v| v / det))
+    let scale = 1.0 / (a.p * bc[0] + a.q * bc[1] + a.e * bc[2]);
+    [bc, ca, ab].map(|column| column.map(|v| v * scale))
 }
 
 #[cfg(test)]

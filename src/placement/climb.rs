@@ -5,7 +5,7 @@
 //! that bind.
 
 use super::index::{RowIndex, game_weight};
-use super::piece::{Handed, Triangle, Weighted};
+use super::piece::{Triangle, Weighted};
 use crate::geom::{Point, Vec2};
 use crate::limits::Row;
 use crate::lp::game::{Game, GameRow, MAX_ROWS};
@@ -53,16 +53,15 @@ impl SettledDisc {
 /// Method: successive linear programs with tangents, rows found by the index; a step that leaves the region is taken again
 /// with a reach that cannot.
 /// Tolerance: ends when a step gains less than 1e-14 of the radius, or after 12 rounds.
-pub(super) fn climb(index: &RowIndex, start: Point, radius: f64, handed: &Handed) -> Spot {
+pub(super) fn climb(index: &RowIndex, start: Point, radius: f64, rows: &[u32]) -> Spot {
     let mut spot = Spot {
         centre: start,
         radius,
         carrying: [(0, 0.0); 3],
     };
-    let mut rows = *handed;
     let mut reach = FIRST_REACH;
     for _ in 0..MAX_ROUNDS {
-        let step = step(index, &spot, &rows, reach * spot.radius);
+        let step = step(index, &spot, rows, reach * spot.radius);
         let gain = step.radius - spot.radius;
         if reach > SAFE_REACH
             && step.centre.distance(spot.centre) >= spot.radius
@@ -72,12 +71,6 @@ pub(super) fn climb(index: &RowIndex, start: Point, radius: f64, handed: &Handed
             continue;
         }
         spot.carrying = step.carrying;
-        let carrying = step
-            .carrying
-            .iter()
-            .filter(|(_, y)| *y > 0.0)
-            .map(|&(row, _)| row);
-        rows = Handed::of(carrying.chain(rows.as_slice().iter().copied()));
         if gain > 0.0 {
             (spot.centre, spot.radius) = (step.centre, step.radius);
         }
@@ -89,13 +82,20 @@ pub(super) fn climb(index: &RowIndex, start: Point, radius: f64, handed: &Handed
 }
 
 /// The best centre by the tangents at the spot, within a triangle of inradius `reach_m` about it.
-fn step(index: &RowIndex, spot: &Spot, handed: &Handed, reach_m: f64) -> Spot {
+fn step(index: &RowIndex, spot: &Spot, likely: &[u32], reach_m: f64) -> Spot {
     let domain = [(0.0, 2.0), (-3f64.sqrt(), -1.0), (3f64.sqrt(), -1.0)]
         .map(|(x, y)| Vec2::new(x, y) * reach_m);
     let mut rows = [0u32; MAX_ROWS];
     let mut game: Option<Game> = None;
-    let here = index.least(spot.centre).row;
-    let known = std::iter::once(here).chain(handed.as_slice().iter().copied());
+    let here = index.least(spot.centre, likely).row;
+    let carrying = spot
+        .carrying
+        .iter()
+        .filter(|(_, y)| *y > 0.0)
+        .map(|&(row, _)| row);
+    let known = std::iter::once(here)
+        .chain(carrying)
+        .chain(likely.iter().copied());
     for row in known {
         add_tangent(index, spot.centre, &domain, row, &mut rows, &mut game);
     }
@@ -104,8 +104,8 @@ fn step(index: &RowIndex, spot: &Spot, handed: &Handed, reach_m: f64) -> Spot {
         let value = game.solve();
         let offset = [0, 1, 2].map(|k| domain[k] * value.point[k]);
         let centre = spot.centre + offset[0] + offset[1] + offset[2];
-        let least = index.least(centre);
         let n = game.n_rows();
+        let least = index.least(centre, &rows[..n]);
         let is_new = !rows[..n].contains(&least.row);
         if is_new && n < MAX_ROWS && least.radius < value.bound {
             let mut more = Some(game);

@@ -4,7 +4,7 @@
 //! one by one. The tree also answers, over the boundary's segments, whether a place is in the region.
 
 use crate::geom::tree::{Node, RunTree, Summary, ray_meets};
-use crate::geom::{Point, predicates};
+use crate::geom::{Point, Segment, predicates};
 use crate::limits::{Feature, Limits, LotRows, Row};
 
 /// The extremes of w and s over rows: a bound on what any of them allows at a distance.
@@ -43,6 +43,8 @@ pub(super) struct RowIndex<'a> {
     limits: &'a Limits,
     /// Rows before this one are half-planes and looked at one by one.
     n_scanned: usize,
+    /// The rows where each is a boundary segment that asks for the radius alone.
+    plain: Option<&'a [Segment]>,
     tree: RunTree<Weights>,
 }
 
@@ -53,6 +55,10 @@ impl<'a> RowIndex<'a> {
             LotRows::Features => 0,
         };
         let rows = &limits.rows[n_scanned..];
+        let boundary = limits.region.boundary();
+        let is_plain =
+            |row: &Row| row.w == 1.0 && row.s == 0.0 && matches!(row.feature, Feature::Segment(_));
+        let plain = (rows.len() == boundary.len() && rows.iter().all(is_plain)).then_some(boundary);
         let node = |row: &Row| Node {
             bounds: row.feature.bounds(),
             summary: Weights {
@@ -64,6 +70,7 @@ impl<'a> RowIndex<'a> {
         RowIndex {
             limits,
             n_scanned,
+            plain,
             tree: RunTree::build(rows.len(), |i| node(&rows[i])),
         }
     }
@@ -76,17 +83,46 @@ impl<'a> RowIndex<'a> {
         self.limits
     }
 
-    /// The row that allows the least radius at `c`. Cost about O(log n) for rows in ring order.
-    pub fn least(&self, c: Point) -> Least {
+    /// The row that allows the least radius at `c`; `likely` rows are tried first. Cost about O(log n) for rows in ring
+    /// order.
+    pub fn least(&self, c: Point, likely: &[u32]) -> Least {
+        match self.plain {
+            Some(boundary) => self.least_plain(boundary, c, likely),
+            None => self.least_weighted(c, likely),
+        }
+    }
+
+    /// The nearest boundary segment, by squared distances.
+    fn least_plain(&self, boundary: &[Segment], c: Point, likely: &[u32]) -> Least {
+        let mut found = 0;
+        let mut best2 = f64::INFINITY;
+        let mut visit = |i: usize, best2: &mut f64| {
+            let distance2 = boundary[i].distance2(c);
+            if distance2 < *best2 {
+                (*best2, found) = (distance2, i);
+            }
+        };
+        likely.iter().for_each(|&i| visit(i as usize, &mut best2));
+        self.tree
+            .nearest(&mut best2, |node| node.bounds.distance2(c), visit);
+        Least {
+            row: found as u32,
+            radius: best2.sqrt(),
+        }
+    }
+
+    fn least_weighted(&self, c: Point, likely: &[u32]) -> Least {
         let rows = &self.limits.rows;
         let mut found = 0;
         let mut best = f64::INFINITY;
-        for (i, row) in rows[..self.n_scanned].iter().enumerate() {
-            let radius = row.radius(c);
-            if radius < best {
-                (best, found) = (radius, i);
+        let mut visit = |i: usize, best: &mut f64| {
+            let radius = rows[i].radius(c);
+            if radius < *best {
+                (*best, found) = (radius, i);
             }
-        }
+        };
+        likely.iter().for_each(|&i| visit(i as usize, &mut best));
+        (0..self.n_scanned).for_each(|i| visit(i, &mut best));
         let lower = |node: &Node<Weights>| {
             let beyond = node.bounds.distance2(c).sqrt() - node.summary.s_max;
             let w = if beyond >= 0.0 {
@@ -100,13 +136,8 @@ impl<'a> RowIndex<'a> {
                 f64::INFINITY.copysign(beyond)
             }
         };
-        self.tree.nearest(&mut best, lower, |i, best| {
-            let i = i + self.n_scanned;
-            let radius = rows[i].radius(c);
-            if radius < *best {
-                (*best, found) = (radius, i);
-            }
-        });
+        self.tree
+            .nearest(&mut best, lower, |i, best| visit(i + self.n_scanned, best));
         Least {
             row: found as u32,
             radius: best,
@@ -164,9 +195,4 @@ pub(super) fn game_entry(row: &Row, c: Point) -> f64 {
 /// The weight that goes with [`game_entry`].
 pub(super) fn game_weight(row: &Row) -> f64 {
     if row.otherwise.is_none() { row.w } else { 1.0 }
-}
-
-/// Whether a feature's distance is linear on the open side.
-pub(super) fn is_half_plane(row: &Row) -> bool {
-    matches!(row.feature, Feature::HalfPlane { .. })
 }

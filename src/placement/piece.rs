@@ -6,7 +6,7 @@
 
 use super::index::{Least, RowIndex, game_entry, game_weight};
 use crate::geom::Point;
-use crate::lp::game::{Game, GameRow, MAX_ROWS};
+use crate::lp::game::{Game, GameRow, MAX_ROWS, Value};
 
 /// Rows a piece hands to its halves: enough to start them, few enough to copy.
 pub(super) const N_HANDED: usize = 6;
@@ -29,27 +29,45 @@ pub(super) struct Piece {
     pub node: u32,
 }
 
-/// A few row indices, the first of a row with positive weight.
+/// A few rows with what they ask at the piece's corners, the first of them with positive weight.
 #[derive(Clone, Copy, Debug, Default)]
 pub(super) struct Handed {
     rows: [u32; N_HANDED],
+    at_corners: [[f64; 3]; N_HANDED],
     n: u8,
 }
 
 impl Handed {
-    pub fn of(rows: impl IntoIterator<Item = u32>) -> Handed {
+    /// One row at the corners of a triangle, for a root.
+    pub fn one(index: &RowIndex, row: u32, corners: &Triangle) -> Handed {
         let mut handed = Handed::default();
-        for row in rows {
-            if (handed.n as usize) < N_HANDED && !handed.as_slice().contains(&row) {
-                handed.rows[handed.n as usize] = row;
-                handed.n += 1;
-            }
-        }
+        handed.push(row, corners.map(|c| game_entry(index.row(row), c)));
         handed
     }
 
-    pub fn as_slice(&self) -> &[u32] {
+    pub fn rows(&self) -> &[u32] {
         &self.rows[..self.n as usize]
+    }
+
+    /// Adds a row that is not there yet, while there is room.
+    fn push(&mut self, row: u32, at_corners: [f64; 3]) {
+        let n = self.n as usize;
+        if n < N_HANDED && !self.rows().contains(&row) && at_corners.iter().all(|v| v.is_finite()) {
+            (self.rows[n], self.at_corners[n]) = (row, at_corners);
+            self.n += 1;
+        }
+    }
+
+    /// What the halves of a piece are handed, cut at the middle `m` of the side from corner `k`.
+    fn halves(&self, index: &RowIndex, k: usize, m: Point) -> [Handed; 2] {
+        let mut halves = [Handed::default(); 2];
+        for (&row, v) in self.rows().iter().zip(&self.at_corners) {
+            let (a, b, c) = (v[k], v[(k + 1) % 3], v[(k + 2) % 3]);
+            let at_m = game_entry(index.row(row), m);
+            halves[0].push(row, [a, at_m, c]);
+            halves[1].push(row, [at_m, b, c]);
+        }
+        halves
     }
 }
 
@@ -69,80 +87,63 @@ pub(super) struct Looked {
 /// allows least there.
 /// Method: as in the module's head; stops when the bound is at most `enough`, when the least row at the point is in the
 /// game already, or when the game is full.
-/// Preconditions: `handed` names at least one row, the first with positive weight.
-/// Cost: three distances a row and one query of the index a round; three to six rows.
+/// Preconditions: `handed` speaks of the same corners and its first row has positive weight.
+/// Cost: three distances for a new row and one query of the index a round; three to six rows.
 pub(super) fn look(index: &RowIndex, corners: &Triangle, handed: &Handed, enough: f64) -> Looked {
     let mut rows = [0u32; MAX_ROWS];
-    let mut handed = handed.as_slice().iter();
-    rows[0] = handed.next().copied().unwrap_or(0);
-    let mut game = Game::new(row_of(index, rows[0], corners).unwrap_or(GameRow {
-        d: [f64::MAX; 3],
-        w: 1.0,
-    }));
-    for &row in handed {
-        if let Some(entry) = row_of(index, row, corners) {
-            rows[game.n_rows()] = row;
-            game.push(entry);
-        }
+    let game_row = |row: u32, d: [f64; 3]| GameRow {
+        d,
+        w: game_weight(index.row(row)),
+    };
+    rows[0] = handed.rows[0];
+    let mut game = Game::new(game_row(rows[0], handed.at_corners[0]));
+    for (&row, &d) in handed.rows().iter().zip(&handed.at_corners).skip(1) {
+        rows[game.n_rows()] = row;
+        game.push(game_row(row, d));
     }
     loop {
         let value = game.solve();
         let point = point_of(corners, value.point);
-        let weights = value.weights.map(|(i, y)| (rows[i], y));
-        let done = |least| Looked {
-            bound: value.bound,
-            weights,
-            handed: hand_on(index, &weights, &rows[..game.n_rows()]),
-            point,
-            least,
-        };
-        let unknown = Least {
+        let n = game.n_rows();
+        let mut least = Least {
             row: rows[0],
             radius: f64::NEG_INFINITY,
         };
-        if value.bound <= enough {
-            return done(unknown);
-        }
-        let least = index.least(point);
-        if rows[..game.n_rows()].contains(&least.row) {
-            return done(least);
-        }
-        let n = game.n_rows();
-        match row_of(index, least.row, corners) {
-            Some(entry) if n < MAX_ROWS => {
+        if value.bound > enough {
+            least = index.least(point, &rows[..n]);
+            let d = corners.map(|c| game_entry(index.row(least.row), c));
+            let is_new = !rows[..n].contains(&least.row) && d.iter().all(|v| v.is_finite());
+            if is_new && game.push(game_row(least.row, d)) {
                 rows[n] = least.row;
-                game.push(entry);
+                continue;
             }
-            _ => return done(least),
         }
+        let weights = value.weights.map(|(i, y)| (rows[i], y));
+        return Looked {
+            bound: value.bound,
+            weights,
+            handed: hand_on(&game, &value, &rows[..n]),
+            point,
+            least,
+        };
     }
 }
 
-/// The row of the game that a row of the site makes over a triangle; `None` where it allows any radius at a corner.
-fn row_of(index: &RowIndex, row: u32, corners: &Triangle) -> Option<GameRow> {
-    let row = index.row(row);
-    let d = corners.map(|c| game_entry(row, c));
-    d.iter().all(|v| v.is_finite()).then(|| GameRow {
-        d,
-        w: game_weight(row),
-    })
-}
-
 /// The rows a half starts with: those that carry the bound, a weighty one first, then the newest others.
-fn hand_on(index: &RowIndex, weights: &[Weighted; 3], rows: &[u32]) -> Handed {
+fn hand_on(game: &Game, value: &Value, rows: &[u32]) -> Handed {
+    let mut handed = Handed::default();
+    let mut add = |i: usize| handed.push(rows[i], game.row(i).d);
     let carrying = || {
-        weights
+        value
+            .weights
             .iter()
             .filter(|(_, y)| *y > 0.0)
-            .map(|&(row, _)| row)
+            .map(|&(i, _)| i)
     };
-    let has_weight = |row: &u32| game_weight(index.row(*row)) > 0.0;
-    let first = carrying().find(has_weight).unwrap_or(rows[0]);
-    Handed::of(
-        std::iter::once(first)
-            .chain(carrying())
-            .chain(rows.iter().rev().copied()),
-    )
+    add(carrying().find(|&i| game.row(i).w > 0.0).unwrap_or(0));
+    carrying().for_each(&mut add);
+    (0..rows.len()).rev().for_each(&mut add);
+    handed
 }
 
 fn point_of(corners: &Triangle, l: [f64; 3]) -> Point {
@@ -151,13 +152,15 @@ fn point_of(corners: &Triangle, l: [f64; 3]) -> Point {
     Point::new(at(|c| c.x), at(|c| c.y))
 }
 
-/// The two halves of a triangle, cut from the middle of its longest side to the corner opposite.
-pub(super) fn halves(t: &Triangle) -> [Triangle; 2] {
+/// The two halves of a piece with what they are handed, cut from the middle of its longest side to the corner opposite.
+pub(super) fn halves(index: &RowIndex, piece: &Piece) -> [(Triangle, Handed); 2] {
+    let t = &piece.corners;
     let side2 = |k: usize| t[k].distance2(t[(k + 1) % 3]);
     let k = (0..3).fold(0, |k, j| if side2(j) > side2(k) { j } else { k });
     let [a, b, c] = [t[k], t[(k + 1) % 3], t[(k + 2) % 3]];
     let m = a.midpoint(b);
-    [[a, m, c], [m, b, c]]
+    let [first, second] = piece.handed.halves(index, k, m);
+    [([a, m, c], first), ([m, b, c], second)]
 }
 
 /// The longest side of a triangle, squared, m².

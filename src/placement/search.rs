@@ -59,6 +59,16 @@ pub(super) struct Found {
 /// the gap in diameter.
 const DROP_SHARE: f64 = 0.5 * 0.8;
 
+/// A point whose radius comes this near to its piece's bound, relative to it, needs no climbing: rounding.
+const EXACT: f64 = 1e-14;
+
+/// A piece that is to be cut is climbed from, though no better than the best, when it comes this near to it: its disc then
+/// settles another room that is about as good.
+const NEAR_TIE: f64 = 0.98;
+
+/// Near ties that are climbed to at the most: discs are looked through one by one.
+const MAX_CLIMBED: usize = 64;
+
 /// Pieces between two looks at the cancel flag.
 const CANCEL_EVERY: usize = 256;
 
@@ -71,6 +81,8 @@ pub(super) struct Search<'a> {
     discs: Vec<SettledDisc>,
     best: Option<Spot>,
     spots: Vec<Spot>,
+    /// Triples of rows whose common spot has been climbed to as a near tie.
+    climbed: Vec<[u32; 3]>,
     dropped: f64,
     n_pieces: usize,
     record: Option<Record>,
@@ -109,6 +121,7 @@ impl<'a> Search<'a> {
             discs: Vec::new(),
             best: None,
             spots: Vec::new(),
+            climbed: Vec::new(),
             dropped: 0.0,
             n_pieces: 0,
             record,
@@ -131,8 +144,8 @@ impl<'a> Search<'a> {
                 break;
             }
             let nodes = self.record.as_mut().map_or([0; 2], |r| r.split(piece.node));
-            for (half, node) in halves(&piece.corners).into_iter().zip(nodes) {
-                self.take(half, &piece.handed, piece.bound, node);
+            for ((half, handed), node) in halves(self.index, &piece).into_iter().zip(nodes) {
+                self.take(half, &handed, piece.bound, node);
             }
         }
         for ByBound(piece, _) in std::mem::take(&mut self.heap) {
@@ -167,7 +180,7 @@ impl<'a> Search<'a> {
                 continue;
             }
             let seed = self.weighty_row(centroid(&t));
-            self.take(t, &Handed::of([seed]), f64::INFINITY, i);
+            self.take(t, &Handed::one(self.index, seed, &t), f64::INFINITY, i);
         }
     }
 
@@ -196,32 +209,82 @@ impl<'a> Search<'a> {
         } else if is_outside && self.clears_boundary(&corners, looked.point) {
             self.note(node, Leaf::Outside);
         } else {
+            if !is_outside {
+                self.settle_near_tie(&looked);
+            }
             self.heap.push(ByBound(piece, self.n_pieces));
         }
     }
 
+    /// Settles the room round a piece's point when it is nearly as good as the best, and held by three rows that have not
+    /// been climbed from yet.
+    fn settle_near_tie(&mut self, looked: &Looked) {
+        let best = self.best.map_or(0.0, |b| b.radius);
+        if !(NEAR_TIE * best..=best).contains(&looked.least.radius)
+            || self.climbed.len() >= MAX_CLIMBED
+        {
+            return;
+        }
+        let mut rows = looked.weights.map(|(row, _)| row);
+        rows.sort_unstable();
+        let there = Spot {
+            centre: looked.point,
+            radius: looked.least.radius,
+            carrying: looked.weights,
+        };
+        let is_held = |search: &Self| settled_disc(search.index, &there).is_some();
+        if self.climbed.contains(&rows) || !is_held(self) || !self.is_in_region(looked.point) {
+            return;
+        }
+        self.climbed.push(rows);
+        let spot = self.climb_from(looked);
+        if spot.radius > best {
+            self.best = Some(spot);
+        }
+        self.spots.push(spot);
+        self.settle(&spot);
+    }
+
     /// Climbs from a piece's point if it lies in the region; `false` if it does not.
     fn offer(&mut self, looked: &Looked) -> bool {
-        if self.may_be_outside && !self.index.is_in_region(looked.point) {
+        if !self.is_in_region(looked.point) {
             return false;
         }
-        let spot = climb(
-            self.index,
-            looked.point,
-            looked.least.radius,
-            &looked.handed,
-        );
+        let spot = self.climb_from(looked);
         self.best = Some(spot);
         self.spots.push(spot);
-        if let Some(disc) = settled_disc(self.index, &spot)
-            && disc.radius <= self.enough()
-        {
-            if let Some(record) = &mut self.record {
-                record.disc(&disc);
-            }
-            self.discs.push(disc);
-        }
+        self.settle(&spot);
         true
+    }
+
+    /// Whether a piece's point lies in the region; pieces of the lot's own triangles do.
+    fn is_in_region(&self, p: Point) -> bool {
+        !self.may_be_outside || self.index.is_in_region(p)
+    }
+
+    /// The best spot near a piece's point: the point itself where it comes up to the piece's bound.
+    fn climb_from(&self, looked: &Looked) -> Spot {
+        let Least { radius, .. } = looked.least;
+        if looked.bound - radius <= EXACT * radius {
+            return Spot {
+                centre: looked.point,
+                radius,
+                carrying: looked.weights,
+            };
+        }
+        climb(self.index, looked.point, radius, looked.handed.rows())
+    }
+
+    /// Adds the disc that a spot settles, if it settles one.
+    fn settle(&mut self, spot: &Spot) {
+        let Some(disc) = settled_disc(self.index, spot).filter(|d| d.radius <= self.enough())
+        else {
+            return;
+        };
+        if let Some(record) = &mut self.record {
+            record.disc(&disc);
+        }
+        self.discs.push(disc);
     }
 
     /// Whether no boundary comes as near to `p` as the triangle's farthest corner, so that the triangle lies on p's side.
@@ -266,7 +329,7 @@ impl<'a> Search<'a> {
 
     /// The row that allows least at a place, or a boundary row where that one has no weight.
     fn weighty_row(&self, c: Point) -> u32 {
-        let Least { row, .. } = self.index.least(c);
+        let Least { row, .. } = self.index.least(c, &[]);
         if game_weight(self.index.row(row)) > 0.0 {
             row
         } else {

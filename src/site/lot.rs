@@ -169,18 +169,15 @@ fn gather_ring(
     line_of: &mut [u32],
 ) {
     let n = ring.len();
-    let goes_on = |i: usize| {
-        let before = if i == 0 { n - 1 } else { i - 1 };
+    let goes_on = |before: usize, i: usize| {
         boundary[before] == boundary[i] && is_smooth(ring.segment(before), ring.segment(i))
     };
-    let start = (0..n).find(|&i| !goes_on(i)).unwrap_or(0);
-    for k in 0..n {
-        let i = if start + k >= n {
-            start + k - n
-        } else {
-            start + k
-        };
-        if k == 0 || !goes_on(i) {
+    let start = (0..n)
+        .find(|&i| !goes_on(if i == 0 { n - 1 } else { i - 1 }, i))
+        .unwrap_or(0);
+    let mut before = None;
+    for i in (start..n).chain(0..start) {
+        if before.is_none_or(|before| !goes_on(before, i)) {
             let number = lines.len() as u32 + 1;
             let Boundary { role, setback_m } = boundary[i];
             lines.push(LotLine {
@@ -195,6 +192,7 @@ fn gather_ring(
         let line = lines.len() - 1;
         lines[line].len += 1;
         line_of[i] = line as u32;
+        before = Some(i);
     }
 }
 
