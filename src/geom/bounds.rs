@@ -22,8 +22,8 @@ impl Bounds {
     /// The smallest box that holds `self` and `p`.
     pub fn with(self, p: Point) -> Bounds {
         Bounds {
-            min: Point::new(self.min.x.min(p.x), self.min.y.min(p.y)),
-            max: Point::new(self.max.x.max(p.x), self.max.y.max(p.y)),
+            min: Point::new(lesser(self.min.x, p.x), lesser(self.min.y, p.y)),
+            max: Point::new(greater(self.max.x, p.x), greater(self.max.y, p.y)),
         }
     }
 
@@ -48,8 +48,8 @@ impl Bounds {
 
     /// Squared distance from `p` to the box, m²; 0 inside.
     pub fn distance2(self, p: Point) -> f64 {
-        let dx = (self.min.x - p.x).max(p.x - self.max.x).max(0.0);
-        let dy = (self.min.y - p.y).max(p.y - self.max.y).max(0.0);
+        let dx = greater(greater(self.min.x - p.x, p.x - self.max.x), 0.0);
+        let dy = greater(greater(self.min.y - p.y, p.y - self.max.y), 0.0);
         dx * dx + dy * dy
     }
 
@@ -69,4 +69,13 @@ impl Bounds {
     pub fn centre(self) -> Point {
         self.min.midpoint(self.max)
     }
+}
+
+/// One instruction each, where `f64::min` and `f64::max` take several to see to NaN; coordinates are finite.
+fn lesser(a: f64, b: f64) -> f64 {
+    if a < b { a } else { b }
+}
+
+fn greater(a: f64, b: f64) -> f64 {
+    if a > b { a } else { b }
 }

@@ -76,6 +76,7 @@ impl<S: Summary> RunTree<S> {
         );
     }
 
+    /// Takes the nodes of `range` nearest first: the sooner `best` is good, the fewer are entered.
     fn nearest_below(
         &self,
         level: usize,
@@ -84,14 +85,26 @@ impl<S: Summary> RunTree<S> {
         lower: &impl Fn(&Node<S>) -> f64,
         visit: &mut impl FnMut(usize, &mut f64),
     ) {
-        for (i, node) in range.clone().zip(&self.nodes[range]) {
-            if lower(node) < *best {
-                let children = self.children(level, i);
-                if level == 0 {
-                    children.for_each(|i| visit(i, best));
-                } else {
-                    self.nearest_below(level - 1, children, best, lower, visit);
+        let mut lowers = [f64::INFINITY; FAN];
+        for (slot, node) in lowers.iter_mut().zip(&self.nodes[range.clone()]) {
+            *slot = lower(node);
+        }
+        loop {
+            let mut first = 0;
+            for k in 1..FAN {
+                if lowers[k] < lowers[first] {
+                    first = k;
                 }
+            }
+            if lowers[first] >= *best || lowers[first] == f64::INFINITY {
+                return;
+            }
+            lowers[first] = f64::INFINITY;
+            let children = self.children(level, range.start + first);
+            if level == 0 {
+                children.for_each(|i| visit(i, best));
+            } else {
+                self.nearest_below(level - 1, children, best, lower, visit);
             }
         }
     }

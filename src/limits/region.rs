@@ -1,6 +1,6 @@
 //! The region a centre may lie in: inside the lot, on the kept side of every building line.
 
-use crate::geom::{Area, Point, Polygon, Ring, Segment, predicates};
+use crate::geom::{Area, Bounds, Point, Polygon, Ring, Segment, predicates};
 use crate::site::{BuildingLine, Kept, SiteError};
 
 /// The lot without what lies behind its building lines. Its boundary is the lot's segments in the order of
@@ -9,6 +9,7 @@ use crate::site::{BuildingLine, Kept, SiteError};
 pub struct Region {
     boundary: Vec<Segment>,
     n_lot_segments: usize,
+    bounds: Bounds,
     /// For each segment after the lot's own, the index of its building line.
     line_of: Vec<usize>,
     /// For each building line the ring of the lot that it cuts off.
@@ -30,7 +31,9 @@ impl Region {
             line_of.resize(boundary.len() - n_lot_segments, i);
             cut_off.push(cut.cut_off(line.kept)?);
         }
+        let bounds = boundary.iter().fold(Bounds::EMPTY, |b, s| b.with(s.a));
         Ok(Region {
+            bounds,
             boundary,
             n_lot_segments,
             line_of,
@@ -41,6 +44,11 @@ impl Region {
     /// All segments that bound the region.
     pub fn boundary(&self) -> &[Segment] {
         &self.boundary
+    }
+
+    /// The box of the boundary.
+    pub fn bounds(&self) -> Bounds {
+        self.bounds
     }
 
     /// How many of them are the lot's own; they come first.

@@ -109,11 +109,7 @@ fn finished(
     snap: &dyn Fn(Point) -> Point,
 ) -> Result<Placement, PlaceError> {
     let limits = index.limits();
-    let bounds = limits
-        .region
-        .boundary()
-        .iter()
-        .fold(crate::geom::Bounds::EMPTY, |b, s| b.with(s.a));
+    let bounds = limits.region.bounds();
     let size = bounds.extent() + bounds.centre().to_vec2().length();
     let upper_m = 2.0 * (found.upper + BOUND_ROUNDING * size);
     let circle = found.best.map(|spot| {

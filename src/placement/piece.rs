@@ -153,13 +153,12 @@ fn point_of(corners: &Triangle, l: [f64; 3]) -> Point {
 }
 
 /// The two halves of a piece with what they are handed, cut from the middle of its longest side to the corner opposite.
-pub(super) fn halves(index: &RowIndex, piece: &Piece) -> [(Triangle, Handed); 2] {
-    let t = &piece.corners;
+pub(super) fn halves(index: &RowIndex, t: &Triangle, handed: &Handed) -> [(Triangle, Handed); 2] {
     let side2 = |k: usize| t[k].distance2(t[(k + 1) % 3]);
     let k = (0..3).fold(0, |k, j| if side2(j) > side2(k) { j } else { k });
     let [a, b, c] = [t[k], t[(k + 1) % 3], t[(k + 2) % 3]];
     let m = a.midpoint(b);
-    let [first, second] = piece.handed.halves(index, k, m);
+    let [first, second] = handed.halves(index, k, m);
     [([a, m, c], first), ([m, b, c], second)]
 }
 

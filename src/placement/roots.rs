@@ -35,7 +35,7 @@ const BOX_SQUARES_PER_CORNER: f64 = 4.0;
 
 /// The roots for the limits of a lot.
 pub(super) fn roots(lot: &Area, limits: &Limits) -> Roots {
-    let bounds = lot.bounds();
+    let bounds = limits.region.bounds();
     if limits.lot_rows == LotRows::HalfPlanes {
         return Roots {
             triangles: vec![round(bounds)],

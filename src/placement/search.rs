@@ -62,6 +62,10 @@ const DROP_SHARE: f64 = 0.5 * 0.8;
 /// A point whose radius comes this near to its piece's bound, relative to it, needs no climbing: rounding.
 const EXACT: f64 = 1e-14;
 
+/// A half of a box is cut unseen while its longest side is more than this many radii of the best circle: of such pieces
+/// one in ten could be dropped, of the next smaller ones most.
+const HOPELESS: f64 = 2.1;
+
 /// A piece that is to be cut is climbed from, though no better than the best, when it comes this near to it: its disc then
 /// settles another room that is about as good.
 const NEAR_TIE: f64 = 0.98;
@@ -77,6 +81,7 @@ pub(super) struct Search<'a> {
     index: &'a RowIndex<'a>,
     effort: Effort<'a>,
     may_be_outside: bool,
+    is_boxed: bool,
     heap: BinaryHeap<ByBound>,
     discs: Vec<SettledDisc>,
     best: Option<Spot>,
@@ -117,6 +122,7 @@ impl<'a> Search<'a> {
             index,
             effort,
             may_be_outside: false,
+            is_boxed: false,
             heap: BinaryHeap::new(),
             discs: Vec::new(),
             best: None,
@@ -130,6 +136,7 @@ impl<'a> Search<'a> {
 
     /// Runs to the end.
     pub fn run(mut self, roots: &Roots) -> (Found, Option<Record>) {
+        self.is_boxed = roots.cover == Cover::Box;
         self.may_be_outside = roots.cover == Cover::Box || self.index.limits().region.is_cut();
         self.start(roots);
         let mut end = End::Done;
@@ -143,10 +150,7 @@ impl<'a> Search<'a> {
                 end = early;
                 break;
             }
-            let nodes = self.record.as_mut().map_or([0; 2], |r| r.split(piece.node));
-            for ((half, handed), node) in halves(self.index, &piece).into_iter().zip(nodes) {
-                self.take(half, &handed, piece.bound, node);
-            }
+            self.cut(&piece.corners, &piece.handed, piece.bound, piece.node);
         }
         for ByBound(piece, _) in std::mem::take(&mut self.heap) {
             self.drop_bounded(&piece);
@@ -191,6 +195,10 @@ impl<'a> Search<'a> {
             self.note(node, Leaf::Settled(i as u32));
             return;
         }
+        if self.is_hopelessly_large(&corners) {
+            self.cut(&corners, handed, parent, node);
+            return;
+        }
         let looked = look(self.index, &corners, handed, self.enough());
         let mut is_outside = false;
         if looked.least.radius > self.best.map_or(0.0, |b| b.radius) {
@@ -214,6 +222,20 @@ impl<'a> Search<'a> {
             }
             self.heap.push(ByBound(piece, self.n_pieces));
         }
+    }
+
+    /// Cuts a triangle in two and takes the halves.
+    fn cut(&mut self, corners: &Triangle, handed: &Handed, bound: f64, node: u32) {
+        let nodes = self.record.as_mut().map_or([0; 2], |r| r.split(node));
+        for ((half, handed), node) in halves(self.index, corners, handed).into_iter().zip(nodes) {
+            self.take(half, &handed, bound, node);
+        }
+    }
+
+    /// Whether a triangle of the box is so large beside the best circle that no bound would drop it.
+    fn is_hopelessly_large(&self, corners: &Triangle) -> bool {
+        let best = self.best.map_or(f64::INFINITY, |b| b.radius);
+        self.is_boxed && longest_side2(corners) > (HOPELESS * best).powi(2)
     }
 
     /// Settles the room round a piece's point when it is nearly as good as the best, and held by three rows that have not

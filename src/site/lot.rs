@@ -5,7 +5,7 @@
 //! 1 in the order of the rings, the first line of a ring starting at its first corner that is not smooth.
 
 use super::{SiteError, checked_distance};
-use crate::geom::{Area, Ring, Segment};
+use crate::geom::{Area, Ring, Segment, Vec2};
 
 /// Corners that turn by less than this belong to one lot line. 15 degrees: curves on plats are sampled finer, while the
 /// corners of a surveyed lot turn by more; common practice, no source.
@@ -169,15 +169,18 @@ fn gather_ring(
     line_of: &mut [u32],
 ) {
     let n = ring.len();
-    let goes_on = |before: usize, i: usize| {
-        boundary[before] == boundary[i] && is_smooth(ring.segment(before), ring.segment(i))
-    };
-    let start = (0..n)
-        .find(|&i| !goes_on(if i == 0 { n - 1 } else { i - 1 }, i))
+    let mut before = (ring.segment(n - 1).vector(), boundary[n - 1]);
+    for (i, s) in ring.segments().enumerate() {
+        let here = (s.vector(), boundary[i]);
+        line_of[i] = u32::from(here.1 == before.1 && is_smooth(before.0, here.0));
+        before = here;
+    }
+    let start = line_of
+        .iter()
+        .position(|&goes_on| goes_on == 0)
         .unwrap_or(0);
-    let mut before = None;
     for i in (start..n).chain(0..start) {
-        if before.is_none_or(|before| !goes_on(before, i)) {
+        if i == start || line_of[i] == 0 {
             let number = lines.len() as u32 + 1;
             let Boundary { role, setback_m } = boundary[i];
             lines.push(LotLine {
@@ -192,13 +195,11 @@ fn gather_ring(
         let line = lines.len() - 1;
         lines[line].len += 1;
         line_of[i] = line as u32;
-        before = Some(i);
     }
 }
 
-/// Whether the boundary turns by less than [`SMOOTH_TURN_DEG`] between two neighbouring segments.
-fn is_smooth(before: Segment, after: Segment) -> bool {
-    let (u, v) = (before.vector(), after.vector());
+/// Whether the boundary turns by less than [`SMOOTH_TURN_DEG`] from direction u to direction v.
+fn is_smooth(u: Vec2, v: Vec2) -> bool {
     let dot = u.dot(v);
     dot > 0.0 && dot * dot > SMOOTH_COS2 * u.length2() * v.length2()
 }
