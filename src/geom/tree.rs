@@ -8,7 +8,7 @@ use super::{Bounds, Point};
 
 /// Children of a node and items of a lowest node. 8 boxes fill a few cache lines; 4 and 16 were slower on lots of 100 to
 /// 20,000 segments.
-pub const FAN: usize = 8;
+pub const FAN: usize = 4;
 
 /// What a node knows of its items beside their box.
 pub trait Summary: Copy {
