@@ -62,14 +62,15 @@ const SIDES: [Constraint; 3] = [
     },
 ];
 
-/// One row: w r <= l · d.
+/// One row: w r <= l · d, with the caller's own number for it.
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub struct GameRow {
     pub d: [f64; 3],
     pub w: f64,
+    pub tag: u32,
 }
 
-/// A game with its rows and the basis of its last optimum.
+/// A game with its rows and the basis of its last optimum; used again and again, since a search plays thousands.
 #[derive(Clone, Debug)]
 pub struct Game {
     rows: [GameRow; MAX_ROWS],
@@ -88,44 +89,63 @@ pub struct Value {
     pub bound: f64,
     /// The optimal point of the simplex.
     pub point: [f64; 3],
-    /// Row and weight, weights at least 0 with sum_i y_i w_i = 1 (0 where no point is left); unused entries have weight 0.
-    pub weights: [(usize, f64); 3],
+    /// Tag and weight of the rows, weights at least 0 with sum_i y_i w_i = 1 (0 where no point is left); entries not in use
+    /// have weight 0.
+    pub weights: [(u32, f64); 3],
+}
+
+impl Default for Game {
+    fn default() -> Self {
+        Game::new()
+    }
 }
 
 impl Game {
-    /// A game with one row of positive weight, solved.
-    pub fn new(first: GameRow) -> Game {
-        debug_assert!(first.w > 0.0, "the first row bounds r");
-        let mut rows = [GameRow::default(); MAX_ROWS];
+    /// A game without rows; [`Game::start`] comes next.
+    pub fn new() -> Game {
         let mut constraints = [Constraint::default(); 3 + MAX_ROWS];
-        rows[0] = first;
         constraints[..3].copy_from_slice(&SIDES);
-        constraints[3] = Constraint::of(first);
-        let d = first.d;
-        let best = (0..3).fold(0, |best, k| if d[k] > d[best] { k } else { best });
-        let others = [(best + 1) % 3, (best + 2) % 3];
-        let weights = [1.0, d[best] - d[others[0]], d[best] - d[others[1]]].map(|y| y / first.w);
+        let rows = [GameRow::default(); MAX_ROWS];
         Game {
             rows,
             constraints,
-            n_rows: 1,
-            basis: [3, others[0], others[1]],
-            weights,
-            scale: size(d),
+            n_rows: 0,
+            basis: [0, 1, 2],
+            weights: [0.0; 3],
+            scale: 0.0,
         }
     }
 
-    pub fn n_rows(&self) -> usize {
-        self.n_rows
+    /// Forgets all rows and starts with one of positive weight, solved.
+    pub fn start(&mut self, first: GameRow) {
+        debug_assert!(first.w > 0.0, "the first row bounds r");
+        self.rows[0] = first;
+        self.constraints[3] = Constraint::of(first);
+        self.n_rows = 1;
+        let d = first.d;
+        let best = (0..3).fold(0, |best, k| if d[k] > d[best] { k } else { best });
+        let others = [(best + 1) % 3, (best + 2) % 3];
+        self.basis = [3, others[0], others[1]];
+        self.weights = [1.0, d[best] - d[others[0]], d[best] - d[others[1]]].map(|y| y / first.w);
+        self.scale = size(d);
     }
 
-    pub fn row(&self, i: usize) -> GameRow {
-        self.rows[i]
+    pub fn rows(&self) -> &[GameRow] {
+        &self.rows[..self.n_rows]
+    }
+
+    pub fn is_full(&self) -> bool {
+        self.n_rows == MAX_ROWS
+    }
+
+    /// Whether a row with this tag is in the game.
+    pub fn has(&self, tag: u32) -> bool {
+        self.rows().iter().any(|row| row.tag == tag)
     }
 
     /// Adds a row; `false` when the game is full.
     pub fn push(&mut self, row: GameRow) -> bool {
-        if self.n_rows == MAX_ROWS {
+        if self.is_full() {
             return false;
         }
         self.rows[self.n_rows] = row;
@@ -138,7 +158,7 @@ impl Game {
     /// What comes back: the optimum over the rows added so far.
     ///
     /// Method: dual simplex from the basis of the last solve, most broken constraint first.
-    /// Preconditions: finite rows.
+    /// Preconditions: started; finite rows.
     /// Degenerate input: ties and equal rows give one of the optimal bases; a pivot too small to trust ends the solve early
     /// with a bound that still holds.
     /// Tolerance: a constraint is broken beyond 1e-14 of the largest entry.
@@ -146,8 +166,9 @@ impl Game {
     ///
     /// ```
     /// use roundstead::lp::game::{Game, GameRow};
-    /// let mut game = Game::new(GameRow { d: [0.0, 4.0, 0.0], w: 1.0 });
-    /// game.push(GameRow { d: [2.0, 0.0, 2.0], w: 1.0 });
+    /// let mut game = Game::new();
+    /// game.start(GameRow { d: [0.0, 4.0, 0.0], w: 1.0, tag: 0 });
+    /// game.push(GameRow { d: [2.0, 0.0, 2.0], w: 1.0, tag: 1 });
     /// assert!((game.solve().bound - 4.0 / 3.0).abs() < 1e-12);
     /// ```
     pub fn solve(&mut self) -> Value {
@@ -225,10 +246,11 @@ impl Game {
         let (x, y) = (x.clamp(0.0, 1.0), y.clamp(0.0, 1.0));
         let rest = (1.0 - x - y).max(0.0);
         let total = x + y + rest;
+        let point = [x / total, y / total, rest / total];
         Value {
             bound: self.greatest_column(&weights),
-            point: [x / total, y / total, rest / total],
-            weights,
+            point,
+            weights: self.tagged(weights),
         }
     }
 
@@ -236,18 +258,18 @@ impl Game {
     fn no_point(&self, entering: usize, basis_weights: [f64; 3]) -> Option<Value> {
         let entering = entering.checked_sub(3)?;
         let mut weights = [(entering, 1.0), (0, 0.0), (0, 0.0)];
-        let others = (0..3)
-            .map(|m| self.row_weight(self.basis[m], basis_weights[m]))
-            .filter(|&(row, y)| y > 0.0 && self.rows[row].w == 0.0);
+        let others = (0..3).map(|m| self.row_weight(self.basis[m], basis_weights[m]));
+        let weightless = others.filter(|&(row, y)| y > 0.0 && self.rows[row].w == 0.0);
         weights[1..]
             .iter_mut()
-            .zip(others)
+            .zip(weightless)
             .for_each(|(slot, other)| *slot = other);
         let is_shown = self.rows[entering].w == 0.0 && self.greatest_column(&weights) < 0.0;
-        is_shown.then_some(Value {
-            bound: f64::NEG_INFINITY,
-            point: [1.0 / 3.0; 3],
-            weights,
+        let (bound, point) = (f64::NEG_INFINITY, [1.0 / 3.0; 3]);
+        is_shown.then(|| Value {
+            bound,
+            point,
+            weights: self.tagged(weights),
         })
     }
 
@@ -257,6 +279,10 @@ impl Game {
         } else {
             (0, 0.0)
         }
+    }
+
+    fn tagged(&self, weights: [(usize, f64); 3]) -> [(u32, f64); 3] {
+        weights.map(|(row, y)| (self.rows[row].tag, y))
     }
 
     /// max_k sum_i y_i d_i[k].
@@ -322,14 +348,22 @@ mod tests {
     }
 
     fn game(rows: &[GameRow]) -> Game {
-        let mut game = Game::new(rows[0]);
+        let mut game = Game::new();
+        game.start(rows[0]);
         rows[1..].iter().for_each(|&row| assert!(game.push(row)));
         game
     }
 
+    fn rows(rows: &[([f64; 3], f64)]) -> Vec<GameRow> {
+        (0..)
+            .zip(rows)
+            .map(|(tag, &(d, w))| GameRow { d, w, tag })
+            .collect()
+    }
+
     #[track_caller]
-    fn check(rows: &[([f64; 3], f64)], expected: f64) {
-        let rows: Vec<GameRow> = rows.iter().map(|&(d, w)| GameRow { d, w }).collect();
+    fn check(given: &[([f64; 3], f64)], expected: f64) {
+        let rows = rows(given);
         let found = game(&rows).solve();
         assert!(
             (found.bound - expected).abs() < 1e-9,
@@ -385,26 +419,26 @@ mod tests {
 
     #[test]
     fn rows_that_leave_no_point_are_shown_by_their_weights() {
-        let rows = [
+        let rows = rows(&[
             ([0.0, 4.0, 0.0], 1.0),
             ([2.0, -3.0, -3.0], 0.0),
             ([-4.0, 1.0, -2.0], 0.0),
-        ];
-        let rows = rows.map(|(d, w)| GameRow { d, w });
+        ]);
         let found = game(&rows).solve();
         assert_eq!(found.bound, f64::NEG_INFINITY);
+        let row = |tag: u32| rows[tag as usize];
         let column = |k: usize| {
             found
                 .weights
                 .iter()
-                .map(|&(row, y)| y * rows[row].d[k])
+                .map(|&(tag, y)| y * row(tag).d[k])
                 .sum::<f64>()
         };
         assert!(
             found
                 .weights
                 .iter()
-                .all(|&(row, y)| y == 0.0 || rows[row].w == 0.0)
+                .all(|&(tag, y)| y == 0.0 || row(tag).w == 0.0)
         );
         assert!((0..3).all(|k| column(k) < 0.0), "{:?}", found.weights);
     }
@@ -414,9 +448,10 @@ mod tests {
         let row = GameRow {
             d: [1.0; 3],
             w: 1.0,
+            tag: 0,
         };
-        let mut game = Game::new(row);
+        let mut game = game(&[row]);
         let accepted = (1..2 * MAX_ROWS).filter(|_| game.push(row)).count();
-        assert_eq!((accepted, game.n_rows()), (MAX_ROWS - 1, MAX_ROWS));
+        assert_eq!((accepted, game.rows().len()), (MAX_ROWS - 1, MAX_ROWS));
     }
 }

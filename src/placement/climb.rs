@@ -7,8 +7,7 @@
 use super::index::{RowIndex, game_weight};
 use super::piece::{Triangle, Weighted};
 use crate::geom::{Point, Vec2};
-use crate::limits::Row;
-use crate::lp::game::{Game, GameRow, MAX_ROWS};
+use crate::lp::game::{Game, GameRow};
 
 /// Rounds of tangents. Straight features need one, curved ones four or five; beyond lie circles creeping along ties.
 const MAX_ROUNDS: usize = 12;
@@ -53,7 +52,13 @@ impl SettledDisc {
 /// Method: successive linear programs with tangents, rows found by the index; a step that leaves the region is taken again
 /// with a reach that cannot.
 /// Tolerance: ends when a step gains less than 1e-14 of the radius, or after 12 rounds.
-pub(super) fn climb(index: &RowIndex, start: Point, radius: f64, rows: &[u32]) -> Spot {
+pub(super) fn climb(
+    index: &RowIndex,
+    game: &mut Game,
+    start: Point,
+    radius: f64,
+    rows: &[u32],
+) -> Spot {
     let mut spot = Spot {
         centre: start,
         radius,
@@ -61,12 +66,10 @@ pub(super) fn climb(index: &RowIndex, start: Point, radius: f64, rows: &[u32]) -
     };
     let mut reach = FIRST_REACH;
     for _ in 0..MAX_ROUNDS {
-        let step = step(index, &spot, rows, reach * spot.radius);
+        let step = step(index, game, &spot, rows, reach * spot.radius);
         let gain = step.radius - spot.radius;
-        if reach > SAFE_REACH
-            && step.centre.distance(spot.centre) >= spot.radius
-            && !index.is_in_region(step.centre)
-        {
+        let is_far = step.centre.distance(spot.centre) >= spot.radius;
+        if reach > SAFE_REACH && is_far && !index.is_in_region(step.centre) {
             reach = SAFE_REACH;
             continue;
         }
@@ -82,80 +85,56 @@ pub(super) fn climb(index: &RowIndex, start: Point, radius: f64, rows: &[u32]) -
 }
 
 /// The best centre by the tangents at the spot, within a triangle of inradius `reach_m` about it.
-fn step(index: &RowIndex, spot: &Spot, likely: &[u32], reach_m: f64) -> Spot {
+fn step(index: &RowIndex, game: &mut Game, spot: &Spot, likely: &[u32], reach_m: f64) -> Spot {
     let domain = [(0.0, 2.0), (-3f64.sqrt(), -1.0), (3f64.sqrt(), -1.0)]
         .map(|(x, y)| Vec2::new(x, y) * reach_m);
-    let mut rows = [0u32; MAX_ROWS];
-    let mut game: Option<Game> = None;
-    let here = index.least(spot.centre, likely).row;
+    let tangent = |row: u32| tangent(index, row, spot.centre, &domain);
+    let here = index.least(spot.centre, likely.iter().copied()).row;
     let carrying = spot
         .carrying
         .iter()
         .filter(|(_, y)| *y > 0.0)
         .map(|&(row, _)| row);
-    let known = std::iter::once(here)
+    let mut known = std::iter::once(here)
         .chain(carrying)
-        .chain(likely.iter().copied());
-    for row in known {
-        add_tangent(index, spot.centre, &domain, row, &mut rows, &mut game);
-    }
-    let Some(mut game) = game else { return *spot };
+        .chain(likely.iter().copied())
+        .filter_map(tangent);
+    let Some(first) = known.by_ref().find(|row| row.w > 0.0) else {
+        return *spot;
+    };
+    game.start(first);
+    known.for_each(|row| add(game, row));
     loop {
         let value = game.solve();
         let offset = [0, 1, 2].map(|k| domain[k] * value.point[k]);
         let centre = spot.centre + offset[0] + offset[1] + offset[2];
-        let n = game.n_rows();
-        let least = index.least(centre, &rows[..n]);
-        let is_new = !rows[..n].contains(&least.row);
-        if is_new && n < MAX_ROWS && least.radius < value.bound {
-            let mut more = Some(game);
-            add_tangent(index, spot.centre, &domain, least.row, &mut rows, &mut more);
-            let Some(grown) = more else { return *spot };
-            game = grown;
-            if game.n_rows() > n {
-                continue;
-            }
+        let least = index.least(centre, game.rows().iter().map(|row| row.tag));
+        let n_rows = game.rows().len();
+        if least.radius < value.bound {
+            tangent(least.row)
+                .into_iter()
+                .for_each(|row| add(game, row));
         }
-        let carrying = value.weights.map(|(i, y)| (rows[i], y));
-        return Spot {
-            centre,
-            radius: least.radius,
-            carrying,
-        };
+        if game.rows().len() == n_rows {
+            return Spot {
+                centre,
+                radius: least.radius,
+                carrying: value.weights,
+            };
+        }
     }
 }
 
-/// Adds the tangent of a row at `centre` over the triangle `domain` about it; a row that has none there is left out, and so
-/// is one without weight while the game has no row.
-fn add_tangent(
-    index: &RowIndex,
-    centre: Point,
-    domain: &[Vec2; 3],
-    row: u32,
-    rows: &mut [u32; MAX_ROWS],
-    game: &mut Option<Game>,
-) {
-    let n = game.as_ref().map_or(0, Game::n_rows);
-    if rows[..n].contains(&row) {
-        return;
-    }
-    let Some(entry) = tangent(index.row(row), centre, domain) else {
-        return;
-    };
-    let is_added = match game {
-        Some(game) => game.push(entry),
-        None if entry.w > 0.0 => {
-            *game = Some(Game::new(entry));
-            true
-        }
-        None => false,
-    };
-    if is_added {
-        rows[n] = row;
+/// Adds a row that is not in the game yet, while there is room.
+fn add(game: &mut Game, row: GameRow) {
+    if !game.has(row.tag) {
+        game.push(row);
     }
 }
 
-fn tangent(row: &Row, centre: Point, domain: &[Vec2; 3]) -> Option<GameRow> {
+/// The tangent of a row at `centre` over the triangle `domain` about it; `None` where it has none.
+fn tangent(index: &RowIndex, tag: u32, centre: Point, domain: &[Vec2; 3]) -> Option<GameRow> {
+    let row = index.row(tag);
     let nearest = row.feature.nearest(centre);
     let (value, slope) = match row.otherwise {
         None => (nearest.distance - row.s, 1.0),
@@ -168,6 +147,7 @@ fn tangent(row: &Row, centre: Point, domain: &[Vec2; 3]) -> Option<GameRow> {
     d.iter().all(|v| v.is_finite()).then(|| GameRow {
         d,
         w: game_weight(row),
+        tag,
     })
 }
 

@@ -85,7 +85,7 @@ impl<'a> RowIndex<'a> {
 
     /// The row that allows the least radius at `c`; `likely` rows are tried first. Cost about O(log n) for rows in ring
     /// order.
-    pub fn least(&self, c: Point, likely: &[u32]) -> Least {
+    pub fn least(&self, c: Point, likely: impl Iterator<Item = u32>) -> Least {
         match self.plain {
             Some(boundary) => self.least_plain(boundary, c, likely),
             None => self.least_weighted(c, likely),
@@ -93,7 +93,12 @@ impl<'a> RowIndex<'a> {
     }
 
     /// The nearest boundary segment, by squared distances.
-    fn least_plain(&self, boundary: &[Segment], c: Point, likely: &[u32]) -> Least {
+    fn least_plain(
+        &self,
+        boundary: &[Segment],
+        c: Point,
+        likely: impl Iterator<Item = u32>,
+    ) -> Least {
         let mut found = 0;
         let mut best2 = f64::INFINITY;
         let mut visit = |i: usize, best2: &mut f64| {
@@ -102,7 +107,7 @@ impl<'a> RowIndex<'a> {
                 (*best2, found) = (distance2, i);
             }
         };
-        likely.iter().for_each(|&i| visit(i as usize, &mut best2));
+        likely.for_each(|i| visit(i as usize, &mut best2));
         self.tree
             .nearest(&mut best2, |node| node.bounds.distance2(c), visit);
         Least {
@@ -111,7 +116,7 @@ impl<'a> RowIndex<'a> {
         }
     }
 
-    fn least_weighted(&self, c: Point, likely: &[u32]) -> Least {
+    fn least_weighted(&self, c: Point, likely: impl Iterator<Item = u32>) -> Least {
         let rows = &self.limits.rows;
         let mut found = 0;
         let mut best = f64::INFINITY;
@@ -121,7 +126,7 @@ impl<'a> RowIndex<'a> {
                 (*best, found) = (radius, i);
             }
         };
-        likely.iter().for_each(|&i| visit(i as usize, &mut best));
+        likely.for_each(|i| visit(i as usize, &mut best));
         (0..self.n_scanned).for_each(|i| visit(i, &mut best));
         let lower = |node: &Node<Weights>| {
             let beyond = node.bounds.distance2(c).sqrt() - node.summary.s_max;

@@ -115,7 +115,10 @@ fn finished(
     let circle = found.best.map(|spot| {
         let slide = slide::slide(index, &spot);
         let centre = snap(slide.map_or(spot.centre, |[from, to]| from.midpoint(to)));
-        let claimed = index.least(centre, &[]).radius.min(spot.radius);
+        let claimed = index
+            .least(centre, std::iter::empty())
+            .radius
+            .min(spot.radius);
         let radius = verified_radius(limits, centre, claimed)?;
         Ok::<_, PlaceError>(Circle {
             centre,

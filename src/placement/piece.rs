@@ -6,7 +6,7 @@
 
 use super::index::{Least, RowIndex, game_entry, game_weight};
 use crate::geom::Point;
-use crate::lp::game::{Game, GameRow, MAX_ROWS, Value};
+use crate::lp::game::{Game, GameRow, Value};
 
 /// Rows a piece hands to its halves: enough to start them, few enough to copy.
 pub(super) const N_HANDED: usize = 6;
@@ -89,40 +89,42 @@ pub(super) struct Looked {
 /// game already, or when the game is full.
 /// Preconditions: `handed` speaks of the same corners and its first row has positive weight.
 /// Cost: three distances for a new row and one query of the index a round; three to six rows.
-pub(super) fn look(index: &RowIndex, corners: &Triangle, handed: &Handed, enough: f64) -> Looked {
-    let mut rows = [0u32; MAX_ROWS];
-    let game_row = |row: u32, d: [f64; 3]| GameRow {
+pub(super) fn look(
+    index: &RowIndex,
+    game: &mut Game,
+    corners: &Triangle,
+    handed: &Handed,
+    enough: f64,
+) -> Looked {
+    let game_row = |tag: u32, d: [f64; 3]| GameRow {
         d,
-        w: game_weight(index.row(row)),
+        w: game_weight(index.row(tag)),
+        tag,
     };
-    rows[0] = handed.rows[0];
-    let mut game = Game::new(game_row(rows[0], handed.at_corners[0]));
+    game.start(game_row(handed.rows[0], handed.at_corners[0]));
     for (&row, &d) in handed.rows().iter().zip(&handed.at_corners).skip(1) {
-        rows[game.n_rows()] = row;
         game.push(game_row(row, d));
     }
     loop {
         let value = game.solve();
         let point = point_of(corners, value.point);
-        let n = game.n_rows();
         let mut least = Least {
-            row: rows[0],
+            row: handed.rows[0],
             radius: f64::NEG_INFINITY,
         };
         if value.bound > enough {
-            least = index.least(point, &rows[..n]);
-            let d = corners.map(|c| game_entry(index.row(least.row), c));
-            let is_new = !rows[..n].contains(&least.row) && d.iter().all(|v| v.is_finite());
-            if is_new && game.push(game_row(least.row, d)) {
-                rows[n] = least.row;
-                continue;
+            least = index.least(point, game.rows().iter().map(|row| row.tag));
+            if !game.has(least.row) {
+                let d = corners.map(|c| game_entry(index.row(least.row), c));
+                if d.iter().all(|v| v.is_finite()) && game.push(game_row(least.row, d)) {
+                    continue;
+                }
             }
         }
-        let weights = value.weights.map(|(i, y)| (rows[i], y));
         return Looked {
             bound: value.bound,
-            weights,
-            handed: hand_on(&game, &value, &rows[..n]),
+            weights: value.weights,
+            handed: hand_on(game, &value),
             point,
             least,
         };
@@ -130,19 +132,23 @@ pub(super) fn look(index: &RowIndex, corners: &Triangle, handed: &Handed, enough
 }
 
 /// The rows a half starts with: those that carry the bound, a weighty one first, then the newest others.
-fn hand_on(game: &Game, value: &Value, rows: &[u32]) -> Handed {
+fn hand_on(game: &Game, value: &Value) -> Handed {
     let mut handed = Handed::default();
-    let mut add = |i: usize| handed.push(rows[i], game.row(i).d);
-    let carrying = || {
+    let carries = |row: &&GameRow| {
         value
             .weights
             .iter()
-            .filter(|(_, y)| *y > 0.0)
-            .map(|&(i, _)| i)
+            .any(|&(tag, y)| tag == row.tag && y > 0.0)
     };
-    add(carrying().find(|&i| game.row(i).w > 0.0).unwrap_or(0));
-    carrying().for_each(&mut add);
-    (0..rows.len()).rev().for_each(&mut add);
+    let mut add = |row: &GameRow| handed.push(row.tag, row.d);
+    add(game
+        .rows()
+        .iter()
+        .filter(carries)
+        .find(|row| row.w > 0.0)
+        .unwrap_or(&game.rows()[0]));
+    game.rows().iter().filter(carries).for_each(&mut add);
+    game.rows().iter().rev().for_each(&mut add);
     handed
 }
 

@@ -13,6 +13,7 @@ use super::piece::{Handed, Looked, Piece, Triangle, halves, longest_side2, look}
 use super::record::{Leaf, Record};
 use super::roots::{Cover, Roots};
 use crate::geom::Point;
+use crate::lp::game::Game;
 
 /// What a search may use, and when it is content.
 #[derive(Clone, Copy, Debug)]
@@ -82,6 +83,9 @@ pub(super) struct Search<'a> {
     effort: Effort<'a>,
     may_be_outside: bool,
     is_boxed: bool,
+    game: Game,
+    /// All pieces ever kept; the heap orders those still open.
+    pieces: Vec<Piece>,
     heap: BinaryHeap<ByBound>,
     discs: Vec<SettledDisc>,
     best: Option<Spot>,
@@ -93,8 +97,8 @@ pub(super) struct Search<'a> {
     record: Option<Record>,
 }
 
-/// The order of the heap: greatest bound first, ties in the order of looking.
-struct ByBound(Piece, usize);
+/// A bound and the index of its piece, in the order of the heap: greatest bound first, ties in the order of looking.
+struct ByBound(f64, u32);
 
 impl PartialEq for ByBound {
     fn eq(&self, other: &Self) -> bool {
@@ -109,10 +113,7 @@ impl PartialOrd for ByBound {
 }
 impl Ord for ByBound {
     fn cmp(&self, other: &Self) -> Ordering {
-        self.0
-            .bound
-            .total_cmp(&other.0.bound)
-            .then(other.1.cmp(&self.1))
+        self.0.total_cmp(&other.0).then(other.1.cmp(&self.1))
     }
 }
 
@@ -123,6 +124,8 @@ impl<'a> Search<'a> {
             effort,
             may_be_outside: false,
             is_boxed: false,
+            game: Game::new(),
+            pieces: Vec::new(),
             heap: BinaryHeap::new(),
             discs: Vec::new(),
             best: None,
@@ -140,7 +143,8 @@ impl<'a> Search<'a> {
         self.may_be_outside = roots.cover == Cover::Box || self.index.limits().region.is_cut();
         self.start(roots);
         let mut end = End::Done;
-        while let Some(ByBound(piece, _)) = self.heap.pop() {
+        while let Some(ByBound(_, i)) = self.heap.pop() {
+            let piece = self.pieces[i as usize];
             if piece.bound <= self.enough() {
                 self.drop_bounded(&piece);
                 continue;
@@ -152,7 +156,8 @@ impl<'a> Search<'a> {
             }
             self.cut(&piece.corners, &piece.handed, piece.bound, piece.node);
         }
-        for ByBound(piece, _) in std::mem::take(&mut self.heap) {
+        for ByBound(_, i) in std::mem::take(&mut self.heap) {
+            let piece = self.pieces[i as usize];
             self.drop_bounded(&piece);
         }
         let upper = self.best.map_or(0.0, |b| b.radius).max(self.dropped);
@@ -199,7 +204,8 @@ impl<'a> Search<'a> {
             self.cut(&corners, handed, parent, node);
             return;
         }
-        let looked = look(self.index, &corners, handed, self.enough());
+        let enough = self.enough();
+        let looked = look(self.index, &mut self.game, &corners, handed, enough);
         let mut is_outside = false;
         if looked.least.radius > self.best.map_or(0.0, |b| b.radius) {
             is_outside = !self.offer(&looked);
@@ -220,7 +226,8 @@ impl<'a> Search<'a> {
             if !is_outside {
                 self.settle_near_tie(&looked);
             }
-            self.heap.push(ByBound(piece, self.n_pieces));
+            self.heap.push(ByBound(bound, self.pieces.len() as u32));
+            self.pieces.push(piece);
         }
     }
 
@@ -285,7 +292,7 @@ impl<'a> Search<'a> {
     }
 
     /// The best spot near a piece's point: the point itself where it comes up to the piece's bound.
-    fn climb_from(&self, looked: &Looked) -> Spot {
+    fn climb_from(&mut self, looked: &Looked) -> Spot {
         let Least { radius, .. } = looked.least;
         if looked.bound - radius <= EXACT * radius {
             return Spot {
@@ -294,7 +301,13 @@ impl<'a> Search<'a> {
                 carrying: looked.weights,
             };
         }
-        climb(self.index, looked.point, radius, looked.handed.rows())
+        climb(
+            self.index,
+            &mut self.game,
+            looked.point,
+            radius,
+            looked.handed.rows(),
+        )
     }
 
     /// Adds the disc that a spot settles, if it settles one.
@@ -351,7 +364,7 @@ impl<'a> Search<'a> {
 
     /// The row that allows least at a place, or a boundary row where that one has no weight.
     fn weighty_row(&self, c: Point) -> u32 {
-        let Least { row, .. } = self.index.least(c, &[]);
+        let Least { row, .. } = self.index.least(c, std::iter::empty());
         if game_weight(self.index.row(row)) > 0.0 {
             row
         } else {
