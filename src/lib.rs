@@ -3,5 +3,8 @@
 
 #![forbid(unsafe_code)]
 
+pub mod units;
+
 pub mod geom;
+
 pub mod site;
