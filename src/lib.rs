@@ -8,3 +8,5 @@ pub mod units;
 pub mod geom;
 
 pub mod site;
+
+pub mod io;
