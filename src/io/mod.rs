@@ -7,3 +7,4 @@ mod collection;
 mod geometry;
 pub mod lots;
 pub mod plane;
+pub mod rows;
