@@ -106,19 +106,17 @@ impl<W: Write> CsvRows<W> {
             Value::String(text) => defused(text),
             other => Cow::Owned(other.to_string()),
         };
-        let [x, y] = row.centre.map_or([None; 2], |c| c.map(Some));
-        let cells: [Cow<str>; 8] = [
+        let cells = (
             id,
             defused(row.status),
-            number(row.diameter_m),
-            number(row.upper_m),
-            number(x),
-            number(y),
-            number(row.solve_us),
+            row.diameter_m,
+            row.upper_m,
+            row.centre.map(|[x, _]| x),
+            row.centre.map(|[_, y]| y),
+            row.solve_us,
             defused(row.problem.as_deref().unwrap_or_default()),
-        ];
-        let cells = cells.iter().map(|cell| cell.as_bytes());
-        self.out.write_record(cells).map_err(io_error)
+        );
+        self.out.serialize(cells).map_err(io_error)
     }
 
     /// Flushes and gives the writer back.
@@ -140,13 +138,6 @@ fn io_error(e: csv::Error) -> io::Error {
     match e.into_kind() {
         csv::ErrorKind::Io(e) => e,
         other => io::Error::other(format!("{other:?}")),
-    }
-}
-
-fn number(value: Option<f64>) -> Cow<'static, str> {
-    match value {
-        Some(value) => Cow::Owned(value.to_string()),
-        None => Cow::Borrowed(""),
     }
 }
 
