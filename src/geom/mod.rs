@@ -10,6 +10,8 @@ pub mod pieces;
 pub mod point;
 pub mod predicates;
 pub mod segment;
+#[cfg(test)]
+pub mod test_shapes;
 pub mod tree;
 pub mod triangulate;
 pub mod validate;
