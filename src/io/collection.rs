@@ -48,6 +48,7 @@ pub struct Collection<R> {
     stage: Stage,
     envelope: Vec<u8>,
     has_features: bool,
+    feature_from: u64,
 }
 
 impl<R: BufRead> Collection<R> {
@@ -61,6 +62,7 @@ impl<R: BufRead> Collection<R> {
             stage: Stage::Start,
             envelope: Vec::new(),
             has_features: false,
+            feature_from: 0,
         }
     }
 
@@ -81,7 +83,7 @@ impl<R: BufRead> Collection<R> {
             Stage::Done => false,
         };
         if at_feature {
-            self.bytes.take_value(text, "feature")?;
+            self.feature_from = self.bytes.take_value(text, "feature")?;
             self.stage = Stage::Features(true);
         }
         Ok(at_feature)
@@ -90,6 +92,11 @@ impl<R: BufRead> Collection<R> {
     /// All members but `features`, as the text of an object; whole once [`Collection::next_feature`] has said false.
     pub fn envelope(&self) -> &[u8] {
         &self.envelope
+    }
+
+    /// Where the feature handed out last begins, bytes from the start.
+    pub fn feature_from(&self) -> u64 {
+        self.feature_from
     }
 
     /// Whether the object has a member `features`.
@@ -225,14 +232,15 @@ impl<R: BufRead> Bytes<R> {
 
     fn take_key(&mut self, out: &mut Vec<u8>) -> Result<(), SplitError> {
         if self.peek_solid()? == Some(b'"') {
-            self.take_value(out, "member name")
+            self.take_value(out, "member name")?;
+            Ok(())
         } else {
             Err(self.unexpected("a member name in quotation marks"))
         }
     }
 
-    /// Appends the next JSON value to `out`, its brackets balanced and nothing else about it known.
-    fn take_value(&mut self, out: &mut Vec<u8>, inside: &'static str) -> Result<(), SplitError> {
+    /// Appends the next JSON value to `out`, its brackets balanced and nothing else about it known; where it began.
+    fn take_value(&mut self, out: &mut Vec<u8>, inside: &'static str) -> Result<u64, SplitError> {
         let first = self.peek_solid()?;
         let from = self.position;
         let (before, nested) = (out.len(), matches!(first, Some(b'{' | b'[' | b'"')));
@@ -258,7 +266,7 @@ impl<R: BufRead> Bytes<R> {
                 return Err(self.unexpected("a value"));
             }
             if closed {
-                return Ok(());
+                return Ok(from);
             }
         }
     }

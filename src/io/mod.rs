@@ -8,3 +8,17 @@ mod geometry;
 pub mod lots;
 pub mod plane;
 pub mod rows;
+pub mod site_json;
+
+/// A text from a file for a message, its control characters made visible.
+fn visible(text: &str) -> String {
+    let mut shown = String::with_capacity(text.len());
+    for c in text.chars() {
+        if c.is_control() {
+            shown.extend(c.escape_default());
+        } else {
+            shown.push(c);
+        }
+    }
+    shown
+}

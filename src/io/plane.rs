@@ -24,7 +24,7 @@ use std::sync::LazyLock;
 
 use proj4rs::{proj::Proj, transform::transform};
 
-use crate::geom::validate::RawPolygon;
+use crate::geom::validate::{Problem, RawPolygon};
 use crate::geom::{Bounds, Point};
 use crate::units::LengthUnit;
 
@@ -35,6 +35,11 @@ pub const MAX_REACH_M: f64 = 50_000.0;
 pub const MAX_LATITUDE_DEG: f64 = 89.0;
 /// Metres per degree of latitude, roughly; used to say how large a lot is that was refused.
 const DEGREE_M_APPROX: f64 = 111_000.0;
+
+/// Decimals of degrees in messages: 1 mm.
+const LON_LAT_DECIMALS: usize = 8;
+/// Decimals of plane coordinates in messages: 1 mm in metres.
+const PLANE_DECIMALS: usize = 3;
 
 /// What the coordinates of a file are.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
@@ -233,6 +238,24 @@ impl Plane {
         Snapped {
             input,
             site: self.to_site(input).unwrap_or(site),
+        }
+    }
+
+    /// A problem of validation as a sentence, with its place in input coordinates where those of the site differ.
+    pub fn say(&self, problem: &Problem) -> String {
+        let moved = match *self {
+            Plane::LonLat { .. } => true,
+            Plane::Given { unit, origin } => unit != LengthUnit::Metre || origin != Point::ORIGIN,
+        };
+        let decimals = match self {
+            Plane::LonLat { .. } => LON_LAT_DECIMALS,
+            Plane::Given { .. } => PLANE_DECIMALS,
+        };
+        match problem.at().map(|at| self.from_site(at)) {
+            Some(Point { x, y }) if moved && x.is_finite() && y.is_finite() => {
+                format!("{problem} In the file's coordinates: {x:.decimals$}, {y:.decimals$}.")
+            }
+            _ => problem.to_string(),
         }
     }
 

@@ -5,7 +5,7 @@ use serde::Deserialize;
 use serde_json::Value;
 
 use crate::geom::validate::RawPolygon;
-use crate::io::geometry;
+use crate::io::{geometry, visible};
 
 #[derive(Deserialize)]
 struct Feature {
@@ -47,7 +47,8 @@ pub fn parse(text: &[u8]) -> (Option<Value>, Result<Vec<RawPolygon>, String>) {
         (Some("Feature"), _, Some(geometry)) => geometry::polygons(&geometry.value),
         (Some("Polygon" | "MultiPolygon"), ..) => bare(text),
         (Some(other), ..) => Err(format!(
-            "the type is \"{other}\", not Feature, Polygon or MultiPolygon"
+            "the type is \"{}\", not Feature, Polygon or MultiPolygon",
+            visible(other)
         )),
         (None, ..) => Err("the member type is missing: this is no GeoJSON".to_owned()),
     };
@@ -76,5 +77,5 @@ fn sentence(text: &[u8], e: &serde_json::Error) -> String {
     let line = line.unwrap_or_default();
     let end = e.column().min(line.len());
     let near = line.get(end.saturating_sub(24)..end).unwrap_or_default();
-    format!("{e}, after \"{}\"", String::from_utf8_lossy(near))
+    visible(&format!("{e}, after \"{}\"", String::from_utf8_lossy(near)))
 }

@@ -2,6 +2,7 @@
 
 use super::*;
 use crate::geom::Point;
+use proptest::prelude::*;
 use std::io::BufReader;
 
 fn read(text: &[u8]) -> Vec<Result<LotRecord, LotProblem>> {
@@ -192,4 +193,28 @@ fn refuses_files_that_hold_no_lots() {
     check(b"\xef\xbb\xbf \n", "parcels.csv is empty");
     check(b"id,geometry\n1,2\n", "neither GeoJSON nor a table");
     check(b"%PDF-1.7\n", "neither GeoJSON nor a table");
+}
+
+proptest! {
+    /// Damaged files of every kind: every lot is read or refused, and the reading ends.
+    #[test]
+    fn damaged_files_end(
+        kind in 0..3usize,
+        changes in proptest::collection::vec((any::<prop::sample::Index>(), any::<u8>()), 1..6),
+    ) {
+        let lot = feature("", SQUARE);
+        let mut bytes = match kind {
+            0 => format!("{{\"type\":\"FeatureCollection\",\"features\":[{lot},{lot},{lot}]}}"),
+            1 => format!("\x1e{lot}\n\x1e{lot}\n\x1e{lot}\n"),
+            _ => "id,wkt\n1,\"POLYGON ((0 0, 9 0, 9 9, 0 0))\"\n2,\"POLYGON ((0 0, 9 0, 9 9))\"\n".to_owned(),
+        }
+        .into_bytes();
+        for (at, byte) in changes {
+            let at = at.index(bytes.len());
+            bytes[at] = byte;
+        }
+        if let Ok(lots) = Lots::open(bytes.as_slice(), "lots") {
+            prop_assert!(lots.records().count() <= bytes.len());
+        }
+    }
 }

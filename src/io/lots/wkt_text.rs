@@ -10,6 +10,7 @@ use wkt::types::Polygon;
 
 use crate::geom::Point;
 use crate::geom::validate::RawPolygon;
+use crate::io::visible;
 
 /// The polygons of a cell.
 ///
@@ -84,7 +85,7 @@ fn check_brackets(body: &str) -> Result<(), String> {
                 .chars()
                 .take(20)
                 .collect();
-            return Err(format!("\"{rest}\" follows the last bracket"));
+            return Err(format!("\"{}\" follows the last bracket", visible(&rest)));
         }
     }
     if depth > 0 {
