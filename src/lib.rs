@@ -3,8 +3,16 @@
 
 #![forbid(unsafe_code)]
 
+pub mod units;
+
 pub mod geom;
-pub mod limits;
+
 pub mod lp;
-pub mod placement;
+
 pub mod site;
+
+pub mod limits;
+
+pub mod placement;
+
+pub mod io;

@@ -141,12 +141,193 @@ pub fn yards_meet(ring: &Ring, setback_m: impl Fn(usize) -> f64) -> bool {
         // runs on in full, nor can it at all when both setbacks are the same.
         if along > reach && s_before != s_after {
             let lengths = (before.length2() * after.length2()).sqrt();
-            let (s, t) = (s_before.max(s_after), s_before.min(s_after));
-            if s * along - t * lengths > s * reach {
+            let (more, less) = (s_before.max(s_after), s_before.min(s_after));
+            if more * along - less * lengths > more * reach {
                 return false;
             }
         }
         (before, s_before) = (after, s_after);
     }
     true
+}
+
+#[cfg(test)]
+mod tests {
+    use super::super::test_shapes::{Dice, reversed, ring};
+    use super::super::{Area, Polygon};
+    use super::*;
+
+    #[track_caller]
+    fn check(ring: &Ring, setbacks_m: &[f64], i: usize, expected: [(f64, f64); 4]) {
+        let yard = yard(ring, |k| setbacks_m[k], i).expect("the setback is positive");
+        for (got, want) in yard.corners().iter().zip(expected) {
+            let want = Point::new(want.0, want.1);
+            assert!(got.distance(want) < 1e-12, "{yard:?} is not {expected:?}");
+        }
+    }
+
+    /// An L: reflex at (10, 10), where segments 2 and 3 meet.
+    fn l_shape() -> Ring {
+        ring(&[
+            (0.0, 0.0),
+            (20.0, 0.0),
+            (20.0, 10.0),
+            (10.0, 10.0),
+            (10.0, 20.0),
+            (0.0, 20.0),
+        ])
+    }
+
+    #[test]
+    fn square_corners_end_at_the_segment() {
+        let setbacks = [3.0, 1.0, 1.0, 1.0, 1.0, 1.0];
+        check(
+            &l_shape(),
+            &setbacks,
+            0,
+            [(0.0, 0.0), (20.0, 0.0), (20.0, 3.0), (0.0, 3.0)],
+        );
+        assert_eq!(yard(&l_shape(), |_| 0.0, 0), None);
+    }
+
+    #[test]
+    fn reflex_corners_run_on_to_the_meeting_point() {
+        let s = [1.0, 1.0, 1.0, 2.0, 1.0, 1.0];
+        check(
+            &l_shape(),
+            &s,
+            2,
+            [(20.0, 10.0), (10.0, 10.0), (8.0, 9.0), (20.0, 9.0)],
+        );
+        check(
+            &l_shape(),
+            &s,
+            3,
+            [(10.0, 10.0), (10.0, 20.0), (8.0, 20.0), (8.0, 9.0)],
+        );
+        // Never farther than twice the setback.
+        let s = [1.0, 1.0, 1.0, 5.0, 1.0, 1.0];
+        check(
+            &l_shape(),
+            &s,
+            2,
+            [(20.0, 10.0), (10.0, 10.0), (8.0, 9.0), (20.0, 9.0)],
+        );
+    }
+
+    #[test]
+    fn obtuse_corners_run_on_to_the_neighbour() {
+        // 135 degrees at (10, 0): both sides go on by the setback.
+        let house = ring(&[(0.0, 0.0), (10.0, 0.0), (20.0, 10.0), (0.0, 20.0)]);
+        check(
+            &house,
+            &[3.0; 4],
+            0,
+            [(0.0, 0.0), (13.0, 0.0), (13.0, 3.0), (0.0, 3.0)],
+        );
+        // A corner in the midst of a straight line: twice the setback.
+        let bent = ring(&[(0.0, 0.0), (10.0, 0.0), (30.0, 0.0), (0.0, 20.0)]);
+        check(
+            &bent,
+            &[3.0; 4],
+            0,
+            [(0.0, 0.0), (16.0, 0.0), (16.0, 3.0), (0.0, 3.0)],
+        );
+        check(
+            &bent,
+            &[3.0; 4],
+            1,
+            [(4.0, 0.0), (30.0, 0.0), (30.0, 3.0), (4.0, 3.0)],
+        );
+    }
+
+    #[test]
+    fn holes_have_their_yards_outside() {
+        let hole = reversed(&ring(&[(0.0, 0.0), (4.0, 0.0), (4.0, 4.0), (0.0, 4.0)]));
+        // Segment 0 runs from (0, 4) to (4, 4); every corner of a hole is reflex.
+        check(
+            &hole,
+            &[1.0; 4],
+            0,
+            [(0.0, 4.0), (4.0, 4.0), (5.0, 5.0), (-1.0, 5.0)],
+        );
+    }
+
+    #[test]
+    fn yards_that_meet_leave_the_lot_within_all_setback_lines() {
+        let mut dice = Dice(7);
+        let (mut met, mut apart) = (0, 0);
+        for _ in 0..600 {
+            let lot = convex_ring(&mut dice);
+            let largest = 10f64.powf(dice.uniform(-1.0, 1.5));
+            let same = dice.uniform(0.0, largest);
+            let setbacks: Vec<f64> = (0..lot.len())
+                .map(|_| match dice.below(0, 3) {
+                    0 => same,
+                    1 => 0.0,
+                    _ => dice.uniform(0.0, largest),
+                })
+                .collect();
+            let complete = is_complete(&lot, &setbacks, &mut dice);
+            if yards_meet(&lot, |i| setbacks[i]) {
+                met += 1;
+                assert!(complete, "{lot:?} {setbacks:?}");
+            } else if !complete {
+                apart += 1;
+            }
+        }
+        assert!(met > 100 && apart > 20, "both happen: {met} {apart}");
+    }
+
+    /// Whether, at sampled points of the lot, being behind some setback line and being in some yard is the same.
+    fn is_complete(lot: &Ring, setbacks: &[f64], dice: &mut Dice) -> bool {
+        const NEAR_M: f64 = 1e-9;
+        let yards: Vec<Yard> = (0..lot.len())
+            .filter_map(|i| yard(lot, |k| setbacks[k], i))
+            .collect();
+        let area = Area {
+            parts: vec![Polygon {
+                outer: lot.clone(),
+                holes: Vec::new(),
+            }],
+        };
+        (0..400).all(|_| {
+            let p = dice.point_in(lot.bounds());
+            let depths = lot.segments().zip(setbacks).map(|(s, setback)| {
+                s.vector().unit().expect("has length").cross(p - s.a) - setback
+            });
+            let spare = depths.fold(f64::INFINITY, f64::min);
+            let in_yard = yards.iter().any(|y| {
+                let c = y.corners();
+                (0..4).all(|k| orient(c[k], c[(k + 1) % 4], p) >= 0.0)
+            });
+            !area.contains(p) || spare.abs() < NEAR_M || in_yard == (spare < 0.0)
+        })
+    }
+
+    /// Corners on an ellipse at random angles, some very near each other, some flat.
+    fn convex_ring(dice: &mut Dice) -> Ring {
+        let n = dice.below(3, 12);
+        let mut angles: Vec<f64> = (0..n)
+            .map(|_| dice.uniform(0.0, std::f64::consts::TAU))
+            .collect();
+        let near = angles[0] + 10f64.powf(dice.uniform(-4.0, -0.5));
+        angles.push(near);
+        angles.sort_by(f64::total_cmp);
+        let (a, b) = (dice.uniform(5.0, 100.0), dice.uniform(5.0, 100.0));
+        Ring::new(
+            angles
+                .iter()
+                .map(|t| Point::new(a * t.cos(), b * t.sin()))
+                .collect(),
+        )
+    }
+
+    #[test]
+    fn equal_setbacks_always_meet() {
+        let straight = ring(&[(0.0, 0.0), (10.0, 0.0), (30.0, 0.0), (0.0, 20.0)]);
+        assert!(yards_meet(&straight, |_| 0.1));
+        assert!(yards_meet(&straight, |_| 0.0));
+        assert!(!yards_meet(&straight, |i| [1.0, 2.0, 0.0, 0.0][i]));
+    }
 }

@@ -2,17 +2,18 @@
 //!
 //! Method: holes are first joined to the outer ring by bridges to corners they see ([`bridges`]); then a convex corner
 //! whose triangle with its two neighbours holds no other corner is cut off, and so on (Meisters, Polygons have ears,
-//! 1975). Only reflex corners can lie in such a triangle, and they wait in a grid ([`reflex`]). Every decision is an exact
+//! 1975; [`ears`]). Only reflex corners can lie in such a triangle, and they wait in a grid ([`reflex`]). Every decision is an exact
 //! predicate, so that rounding never leads it astray; and since each triangle cut off is counter-clockwise and takes its
 //! own boundary with it, what comes back is a cover of the polygon whatever the order was. Limit: about n^1.5 steps in
 //! practice for n corners, n² at worst.
 
 mod bridges;
+mod ears;
 mod reflex;
 
 use super::{Point, Polygon, Ring, predicates::orient};
 use bridges::Boundary;
-use reflex::ReflexGrid;
+use ears::clip_ears;
 
 /// The corners of a polygon in one list, as the triangles number them: the outer ring's, then each hole's.
 pub fn corners_of(polygon: &Polygon) -> Vec<Point> {
@@ -52,67 +53,6 @@ pub fn triangulate(polygon: &Polygon) -> Option<Vec<[u32; 3]>> {
     boundary.split_touched_segments(&mut triangles);
     let joined = boundary.join_touching_rings() && boundary.bridge_holes();
     (joined && clip_ears(boundary, &mut triangles)).then_some(triangles)
-}
-
-/// Cuts ears off until a triangle is left. False when no ear can be found, so that the boundary was not a valid one.
-fn clip_ears(mut boundary: Boundary, triangles: &mut Vec<[u32; 3]>) -> bool {
-    let mut reflex = ReflexGrid::of(&boundary);
-    let mut blockers = vec![u32::MAX; boundary.len()];
-    let mut left = boundary.len();
-    let mut missed = 0;
-    let mut node = 0;
-    while left > 3 {
-        let (before, after) = (boundary.prev(node), boundary.next(node));
-        let ear = [before, node, after].map(|v| boundary.at(v));
-        if orient(ear[0], ear[1], ear[2]) <= 0.0
-            || !is_empty(ear, &reflex, &mut blockers[node as usize])
-        {
-            node = after;
-            missed += 1;
-            if missed > left {
-                return false;
-            }
-            continue;
-        }
-        triangles.push([before, node, after].map(|v| boundary.corner(v)));
-        boundary.unlink(node);
-        left -= 1;
-        missed = 0;
-        for v in [before, after] {
-            if reflex.holds(v) && boundary.turn(v) > 0.0 {
-                reflex.remove(v, boundary.at(v));
-            }
-        }
-        // One corner is passed over, so that triangles grow alike all round instead of fanning out from one corner.
-        node = boundary.next(after);
-    }
-    let last = [boundary.prev(node), node, boundary.next(node)];
-    triangles.push(last.map(|v| boundary.corner(v)));
-    boundary.turn(node) > 0.0
-}
-
-/// Whether no reflex corner lies in the closed triangle, other than at its own corners. `blocker` remembers one that did:
-/// it mostly still does.
-fn is_empty(ear: [Point; 3], reflex: &ReflexGrid, blocker: &mut u32) -> bool {
-    let [a, b, c] = ear;
-    let blocks = |p: Point| {
-        orient(c, a, p) >= 0.0
-            && orient(a, b, p) >= 0.0
-            && orient(b, c, p) >= 0.0
-            && p != a
-            && p != b
-            && p != c
-    };
-    if reflex.get(*blocker).is_some_and(blocks) {
-        return false;
-    }
-    match reflex.find(ear, blocks) {
-        Some(found) => {
-            *blocker = found;
-            false
-        }
-        None => true,
-    }
 }
 
 /// Whether the triangles cover the polygon exactly and without overlap.

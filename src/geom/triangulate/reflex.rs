@@ -7,6 +7,8 @@ use crate::geom::{Bounds, Point};
 
 /// Up to this many corners lie in one cell: looking through them costs less than laying out a grid.
 const ONE_CELL: usize = 48;
+/// From this many columns on it pays to ask which of them a triangle meets, row by row.
+const WIDE: usize = 6;
 /// Says that a node is not in the grid.
 const ABSENT: u32 = u32::MAX;
 
@@ -134,12 +136,19 @@ impl ReflexGrid {
         }
     }
 
-    /// A node in the triangle's bounding box that `wanted` says yes to.
+    /// A node in the triangle's bounding box that `wanted`, which is false for points outside the triangle, says yes to.
     pub(super) fn find(&self, triangle: [Point; 3], wanted: impl Fn(Point) -> bool) -> Option<u32> {
         let bounds = Bounds::of(triangle);
-        let columns = self.column(bounds.min.x)..=self.column(bounds.max.x);
-        for row in self.row(bounds.min.y)..=self.row(bounds.max.y) {
-            for column in columns.clone() {
+        let columns = (self.column(bounds.min.x), self.column(bounds.max.x));
+        let rows = (self.row(bounds.min.y), self.row(bounds.max.y));
+        let is_wide = columns.1 - columns.0 > WIDE && rows.1 > rows.0;
+        for row in rows.0..=rows.1 {
+            let (first, last) = if is_wide {
+                self.columns_in_row(triangle, row)
+            } else {
+                columns
+            };
+            for column in first.max(columns.0)..=last.min(columns.1) {
                 let cell = row * self.columns + column;
                 let start = self.starts[cell] as usize;
                 let entries = &self.entries[start..start + self.lens[cell] as usize];
@@ -152,5 +161,33 @@ impl ReflexGrid {
             }
         }
         None
+    }
+
+    /// The columns that a triangle meets in one row, and one more on either side against rounding.
+    fn columns_in_row(&self, triangle: [Point; 3], row: usize) -> (usize, usize) {
+        let bottom = self.origin.y + row as f64 / self.cells_per_m;
+        let top = bottom + 1.0 / self.cells_per_m;
+        let (mut min_x, mut max_x) = (f64::INFINITY, f64::NEG_INFINITY);
+        for k in 0..3 {
+            let (a, b) = (triangle[k], triangle[(k + 1) % 3]);
+            if a.y.max(b.y) < bottom || a.y.min(b.y) > top {
+                continue;
+            }
+            let per_y = if a.y == b.y {
+                0.0
+            } else {
+                (b.x - a.x) / (b.y - a.y)
+            };
+            for (end, other) in [(a, b), (b, a)] {
+                let x = end.x + (end.y.clamp(bottom, top) - end.y) * per_y;
+                let x = x.clamp(end.x.min(other.x), end.x.max(other.x));
+                (min_x, max_x) = (min_x.min(x), max_x.max(x));
+            }
+        }
+        if min_x > max_x {
+            return (0, self.columns - 1);
+        }
+        let first = self.column(min_x).saturating_sub(1);
+        (first, (self.column(max_x) + 1).min(self.columns - 1))
     }
 }

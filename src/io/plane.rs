@@ -1,0 +1,474 @@
+//! The site plane: metres, x east and y north, near the origin; to it from input coordinates and back.
+//!
+//! **Longitude and latitude** (WGS84, degrees) go through a transverse Mercator (EPSG method 9807, series by Krüger to
+//! the sixth order, crate `proj4rs`) with its central meridian and origin in the middle of the lot and scale 1 there.
+//! Distances in the plane are then distances on the ellipsoid, times 1 + x²/(2 R²) for a place x metres east or west of
+//! the middle, R about 6,370 km. The error of a distance is so at most
+//!
+//! | reach from the middle | of the distance | over 100 m |
+//! | --- | --- | --- |
+//! | 100 m | 1.3e-10 | 0.00002 mm |
+//! | 1 km | 1.3e-8 | 0.002 mm |
+//! | 5 km | 3.1e-7 | 0.03 mm |
+//! | 50 km | 3.1e-5 | 3 mm |
+//!
+//! always to the large side, and a lot that reaches further than [`MAX_REACH_M`] is refused. Coordinates come with a
+//! rounding noise of a few nanometres. **The ellipsoid is not the ground**: a height of h above it stretches the ground
+//! by h / R, about 1 part in 6,400 per kilometre (16 mm over 100 m at 1,000 m), which is not corrected: distances on the
+//! ground are that much longer than those in the plane.
+//!
+//! **Plane coordinates** are scaled to metres and moved by a whole number of units near the middle of the lot. The move
+//! is made only where it is exact, so metres lose nothing.
+
+use std::sync::LazyLock;
+
+use proj4rs::{proj::Proj, transform::transform};
+
+use crate::geom::validate::{Problem, RawPolygon};
+use crate::geom::{Bounds, Point};
+use crate::units::LengthUnit;
+
+/// A lot may reach this far from its middle, m. The distance error is 3.1e-5 there, 3 mm over 100 m; ten times as far it
+/// would be 0.3 m, more than a setback's tolerance. In practice this catches plane coordinates taken for degrees.
+pub const MAX_REACH_M: f64 = 50_000.0;
+/// Latitudes beyond this are refused, degrees: within 111 km of a pole the middle of a box of longitudes means nothing.
+pub const MAX_LATITUDE_DEG: f64 = 89.0;
+/// Metres per degree of latitude, roughly; used to say how large a lot is that was refused.
+const DEGREE_M_APPROX: f64 = 111_000.0;
+
+/// Decimals of degrees in messages: 1 mm.
+const LON_LAT_DECIMALS: usize = 8;
+/// Decimals of plane coordinates in messages: 1 mm in metres.
+const PLANE_DECIMALS: usize = 3;
+
+/// What the coordinates of a file are.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum Coordinates {
+    /// Longitude and latitude in degrees, WGS84, in this order.
+    #[default]
+    LonLat,
+    /// Plane coordinates, x and y, in this unit.
+    Plane(LengthUnit),
+}
+
+/// Why coordinates have no place in a site plane.
+#[derive(Clone, Debug, PartialEq, thiserror::Error)]
+pub enum PlaneError {
+    #[error("the coordinates {x}, {y} are not finite")]
+    NotFinite { x: f64, y: f64 },
+    #[error(
+        "{x}, {y} is no longitude and latitude (-180 to 180, -90 to 90, in this order): for plane coordinates use --plane"
+    )]
+    OutOfRange { x: f64, y: f64 },
+    #[error(
+        "latitude {0} is within a degree of a pole, where longitudes crowd: bring the lot in plane coordinates"
+    )]
+    NearPole(f64),
+    #[error(
+        "taken as longitude and latitude the lot is about {km:.0} km across; at most {} km can be measured in one plane. For plane coordinates use --plane", 2.0 * MAX_REACH_M / 1000.0
+    )]
+    TooWide { km: f64 },
+    #[error("there are no coordinates")]
+    Empty,
+}
+
+/// The way between input coordinates and the site plane.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Plane {
+    /// Transverse Mercator on WGS84 with this central meridian, and the northing of the origin's latitude from the
+    /// equator.
+    LonLat {
+        longitude0_deg: f64,
+        latitude0_deg: f64,
+        northing0_m: f64,
+    },
+    /// Input coordinates in `unit`, the site's origin at `origin` in them.
+    Given { unit: LengthUnit, origin: Point },
+}
+
+/// A point that input coordinates can name exactly.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Snapped {
+    /// In input coordinates; printed with all digits and read again it gives `site` to the bit.
+    pub input: Point,
+    /// In the site plane.
+    pub site: Point,
+}
+
+impl Plane {
+    /// The plane for a lot given in input coordinates.
+    ///
+    /// # Errors
+    /// For longitude and latitude: what is not finite, out of range, near a pole, or too wide. Plane coordinates are left
+    /// to validation.
+    pub fn around(lot: &[RawPolygon], coordinates: Coordinates) -> Result<Plane, PlaneError> {
+        let corners = || {
+            lot.iter()
+                .flat_map(|p| &p.rings)
+                .flat_map(|ring| ring.iter().copied())
+        };
+        match coordinates {
+            Coordinates::LonLat => Plane::lon_lat(corners()),
+            Coordinates::Plane(unit) => Ok(Plane::given(unit, corners())),
+        }
+    }
+
+    fn lon_lat(corners: impl Iterator<Item = Point>) -> Result<Plane, PlaneError> {
+        let mut bounds = Bounds::EMPTY;
+        let mut near = None;
+        for p in corners {
+            check_degrees(p)?;
+            if p.y.abs() > MAX_LATITUDE_DEG {
+                return Err(PlaneError::NearPole(p.y));
+            }
+            // A lot across the 180th meridian hangs together once its longitudes are counted on.
+            let x = counted_on(p.x, *near.get_or_insert(p.x));
+            bounds = bounds.with(Point::new(x, p.y));
+        }
+        if bounds.is_empty() {
+            return Err(PlaneError::Empty);
+        }
+        let middle = bounds.centre();
+        let plane = Plane::lon_lat_at(middle);
+        let width_m = bounds.width() * DEGREE_M_APPROX * middle.y.to_radians().cos();
+        let across_m = width_m.max(bounds.height() * DEGREE_M_APPROX);
+        if across_m > 2.0 * MAX_REACH_M {
+            return Err(PlaneError::TooWide {
+                km: across_m / 1000.0,
+            });
+        }
+        Ok(plane)
+    }
+
+    /// The plane of longitude and latitude with its origin at `middle`, degrees.
+    fn lon_lat_at(middle: Point) -> Plane {
+        Plane::LonLat {
+            longitude0_deg: middle.x,
+            latitude0_deg: middle.y,
+            northing0_m: from_degrees(0.0, middle.y).map_or(f64::NAN, |p| p.y),
+        }
+    }
+
+    fn given(unit: LengthUnit, corners: impl Iterator<Item = Point>) -> Plane {
+        let bounds = Bounds::of(corners.filter(|p| p.is_finite()));
+        // Exact by Sterbenz's lemma: the difference of two numbers within a factor of two of each other has no rounding.
+        let origin = |min: f64, max: f64| {
+            let (middle, half) = (0.5 * (min + max), 0.5 * (max - min));
+            let near = middle.abs() < 4.0 * half;
+            if near || !middle.is_finite() {
+                0.0
+            } else {
+                middle.round()
+            }
+        };
+        let origin = if bounds.is_empty() {
+            Point::ORIGIN
+        } else {
+            Point::new(
+                origin(bounds.min.x, bounds.max.x),
+                origin(bounds.min.y, bounds.max.y),
+            )
+        };
+        Plane::Given { unit, origin }
+    }
+
+    /// The site point of input coordinates.
+    ///
+    /// # Errors
+    /// For longitude and latitude: what is not finite or out of range. Plane coordinates never fail; what is not finite
+    /// stays so.
+    pub fn to_site(&self, input: Point) -> Result<Point, PlaneError> {
+        match *self {
+            Plane::LonLat {
+                longitude0_deg,
+                northing0_m,
+                ..
+            } => {
+                check_degrees(input)?;
+                let east_deg = counted_on(input.x, longitude0_deg) - longitude0_deg;
+                let p = from_degrees(east_deg, input.y).ok_or(PlaneError::OutOfRange {
+                    x: input.x,
+                    y: input.y,
+                })?;
+                Ok(Point::new(p.x, p.y - northing0_m))
+            }
+            Plane::Given { unit, origin } => Ok(Point::new(
+                unit.to_m(input.x - origin.x),
+                unit.to_m(input.y - origin.y),
+            )),
+        }
+    }
+
+    /// Polygons in the site plane, corner for corner.
+    ///
+    /// # Errors
+    /// As [`Plane::to_site`], at the first corner that fails.
+    pub fn to_site_polygons(&self, input: &[RawPolygon]) -> Result<Vec<RawPolygon>, PlaneError> {
+        let ring = |ring: &Vec<Point>| ring.iter().map(|&p| self.to_site(p)).collect();
+        let polygon = |p: &RawPolygon| -> Result<RawPolygon, PlaneError> {
+            let rings = p.rings.iter().map(ring).collect::<Result<_, _>>()?;
+            Ok(RawPolygon { rings })
+        };
+        input.iter().map(polygon).collect()
+    }
+
+    /// The input coordinates of a site point, rounded to f64. [`Plane::snap`] also gives the site point these name.
+    pub fn from_site(&self, site: Point) -> Point {
+        match *self {
+            Plane::LonLat {
+                longitude0_deg,
+                northing0_m,
+                ..
+            } => {
+                let p = to_degrees(Point::new(site.x, site.y + northing0_m));
+                Point::new(wrapped(p.x + longitude0_deg), p.y)
+            }
+            Plane::Given { unit, origin } => Point::new(
+                unit.from_m(site.x) + origin.x,
+                unit.from_m(site.y) + origin.y,
+            ),
+        }
+    }
+
+    /// The nearest point that input coordinates name exactly, in both: verify `site`, print `input`, and what is read
+    /// again is what was verified. Moves by no more than the rounding of the input coordinates (2e-9 m for longitudes,
+    /// half a unit in the last place for plane coordinates).
+    pub fn snap(&self, site: Point) -> Snapped {
+        let input = self.from_site(site);
+        Snapped {
+            input,
+            site: self.to_site(input).unwrap_or(site),
+        }
+    }
+
+    /// A problem of validation as a sentence, with its place in input coordinates where those of the site differ.
+    pub fn say(&self, problem: &Problem) -> String {
+        let moved = match *self {
+            Plane::LonLat { .. } => true,
+            Plane::Given { unit, origin } => unit != LengthUnit::Metre || origin != Point::ORIGIN,
+        };
+        let decimals = match self {
+            Plane::LonLat { .. } => LON_LAT_DECIMALS,
+            Plane::Given { .. } => PLANE_DECIMALS,
+        };
+        match problem.at().map(|at| self.from_site(at)) {
+            Some(Point { x, y }) if moved && x.is_finite() && y.is_finite() => {
+                format!("{problem} In the file's coordinates: {x:.decimals$}, {y:.decimals$}.")
+            }
+            _ => problem.to_string(),
+        }
+    }
+
+    /// Longitude and latitude of a site point in degrees; `None` where the input is plane.
+    pub fn lon_lat_of(&self, site: Point) -> Option<Point> {
+        matches!(self, Plane::LonLat { .. }).then(|| self.from_site(site))
+    }
+}
+
+fn check_degrees(p: Point) -> Result<(), PlaneError> {
+    let Point { x, y } = p;
+    if !p.is_finite() {
+        Err(PlaneError::NotFinite { x, y })
+    } else if x.abs() > 180.0 || y.abs() > 90.0 {
+        Err(PlaneError::OutOfRange { x, y })
+    } else {
+        Ok(())
+    }
+}
+
+/// The longitude within half a turn of `near_deg`, exact where nothing has to be added.
+fn counted_on(longitude_deg: f64, near_deg: f64) -> f64 {
+    if longitude_deg - near_deg > 180.0 {
+        longitude_deg - 360.0
+    } else if longitude_deg - near_deg < -180.0 {
+        longitude_deg + 360.0
+    } else {
+        longitude_deg
+    }
+}
+
+/// The longitude in -180 to 180.
+fn wrapped(longitude_deg: f64) -> f64 {
+    counted_on(longitude_deg, 0.0)
+}
+
+/// One projection serves every lot: the central meridian is taken off the longitude before, the origin's northing after.
+static TRANSVERSE_MERCATOR: LazyLock<Proj> = LazyLock::new(|| {
+    Proj::from_proj_string("+proj=tmerc +lat_0=0 +lon_0=0 +k=1 +x_0=0 +y_0=0 +ellps=WGS84")
+        .expect("the definition is well formed")
+});
+static DEGREES: LazyLock<Proj> = LazyLock::new(|| {
+    Proj::from_proj_string("+proj=longlat +ellps=WGS84").expect("the definition is well formed")
+});
+
+/// Easting from the central meridian and northing from the equator, m.
+fn from_degrees(east_deg: f64, latitude_deg: f64) -> Option<Point> {
+    let mut p = (east_deg.to_radians(), latitude_deg.to_radians(), 0.0);
+    transform(&DEGREES, &TRANSVERSE_MERCATOR, &mut p).ok()?;
+    let p = Point::new(p.0, p.1);
+    p.is_finite().then_some(p)
+}
+
+/// Longitude from the central meridian and latitude in degrees; NaN where there is none.
+fn to_degrees(p: Point) -> Point {
+    let mut p = (p.x, p.y, 0.0);
+    match transform(&TRANSVERSE_MERCATOR, &DEGREES, &mut p) {
+        Ok(()) => Point::new(p.0.to_degrees(), p.1.to_degrees()),
+        Err(_) => Point::new(f64::NAN, f64::NAN),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use geo::{Distance, Geodesic};
+    use proptest::prelude::*;
+    use std::f64::consts::TAU;
+
+    /// A square of 0.001 degrees round a place.
+    fn square_at(lon: f64, lat: f64) -> Vec<RawPolygon> {
+        let e = 0.0005;
+        let ring = [(-e, -e), (e, -e), (e, e), (-e, e)].map(|(x, y)| {
+            let x = lon + x;
+            let x = if x > 180.0 { x - 360.0 } else { x };
+            Point::new(x, lat + y)
+        });
+        vec![RawPolygon {
+            rings: vec![ring.to_vec()],
+        }]
+    }
+
+    fn degrees_plane(lon: f64, lat: f64) -> Plane {
+        Plane::around(&square_at(lon, lat), Coordinates::LonLat).expect("a plane")
+    }
+
+    /// UTM coordinates computed with pyproj 3.7.2 / PROJ 9.5.1, good to 1 mm; UTM is this projection times 0.9996.
+    #[test]
+    fn projection_agrees_with_utm_points() {
+        #[track_caller]
+        fn check(lon: f64, lat: f64, zone: u8, e: f64, n: f64) {
+            let false_northing = if lat < 0.0 { 10_000_000.0 } else { 0.0 };
+            let central_deg = 6.0 * f64::from(zone) - 183.0;
+            let p = from_degrees(lon - central_deg, lat).expect("in range");
+            assert!((500_000.0 + 0.9996 * p.x - e).abs() < 1e-3, "{p:?}");
+            assert!((false_northing + 0.9996 * p.y - n).abs() < 1e-3, "{p:?}");
+        }
+        check(-93.625, 41.5868, 15, 447_905.356_8, 4_604_089.356_2);
+        check(-97.7431, 30.2672, 14, 620_903.830_1, 3_349_062.364_1);
+        check(14.4017, 50.1036, 33, 457_213.937_8, 5_550_320.918_8);
+        check(151.2093, -33.8688, 56, 334_368.633_6, 6_250_948.345_4);
+        check(-90.0, 45.0, 16, 263_553.973_9, 4_987_329.504_7);
+    }
+
+    /// GeodSolve4 of the tests of geographiclib 2.1, recomputed there: 0.07167900926641628 m.
+    #[test]
+    fn a_few_centimetres_come_out_right() {
+        let plane = Plane::lon_lat_at(Point::new(0.0, 36.493_349_428_792));
+        let at = |x, y| plane.to_site(Point::new(x, y)).expect("in range");
+        let d = at(0.0, 36.493_349_428_792).distance(at(8e-7, 36.493_349_428_792_01));
+        assert!((d - 0.071_679_009_266_416_28).abs() < 5e-9, "{d}");
+    }
+
+    proptest! {
+        /// Against geodesics on the ellipsoid (Karney's algorithm in geographiclib-rs): the bound of the module's table.
+        #[test]
+        fn distances_are_those_of_geodesics(
+            lon in -180.0..180.0f64, lat in -88.0..88.0f64, reach_m in 10.0..20_000.0f64,
+            turn in 0.0..TAU, step in 0.0..TAU, apart in 0.01..1.0f64,
+        ) {
+            let plane = Plane::lon_lat_at(Point::new(lon, lat));
+            let a = Point::new(reach_m * turn.cos(), reach_m * turn.sin());
+            let b = a.lerp(Point::new(reach_m * step.cos(), reach_m * step.sin()), apart);
+            let [p, q] = [a, b].map(|p| plane.from_site(p)).map(|p| geo::Point::new(p.x, p.y));
+            let ground = Geodesic.distance(p, q);
+            let x = a.x.abs().max(b.x.abs());
+            let bound = a.distance(b) * 1.02 * (x / 6.335e6).powi(2) / 2.0 + 2e-8;
+            let error = a.distance(b) - ground;
+            prop_assert!(error.abs() < bound, "{} m over {} m", error, ground);
+        }
+
+        #[test]
+        fn snapped_points_are_read_again_to_the_bit(
+            lon in -180.0..180.0f64, lat in -88.0..88.0f64, x in -900.0..900.0f64, y in -900.0..900.0f64,
+            unit in 0..3usize, base in 0..4usize,
+        ) {
+            let p = Point::new(x, y);
+            let base = [0.0, 300.0, 6e5, -5e6][base];
+            let corners = [(0.0, 0.0), (900.0, 0.0), (0.0, 900.0)].map(|(x, y)| Point::new(base + x, base - y));
+            let planes = [
+                Plane::lon_lat_at(Point::new(lon, lat)),
+                Plane::given(LengthUnit::ALL[unit], corners.into_iter()),
+            ];
+            for plane in planes {
+                let snapped = plane.snap(p);
+                let text = [snapped.input.x, snapped.input.y].map(|v| v.to_string());
+                let read = Point::new(text[0].parse().unwrap(), text[1].parse().unwrap());
+                prop_assert_eq!(plane.to_site(read).unwrap(), snapped.site);
+                prop_assert!(snapped.site.distance(p) < 1e-8);
+            }
+        }
+    }
+
+    #[test]
+    fn metres_keep_every_bit() {
+        let ring = [
+            (457_550.789, 5_549_991.418),
+            (457_547.634, 5_549_991.412),
+            (457_530.827, 5_550_031.117),
+        ]
+        .map(|(x, y)| Point::new(x, y));
+        let raw = vec![RawPolygon {
+            rings: vec![ring.to_vec()],
+        }];
+        let plane = Plane::around(&raw, Coordinates::Plane(LengthUnit::Metre)).expect("a plane");
+        for p in ring {
+            let site = plane.to_site(p).expect("plane coordinates");
+            assert!(site.x.abs() < 50.0 && site.y.abs() < 50.0, "{site:?}");
+            assert_eq!(plane.from_site(site), p);
+        }
+    }
+
+    #[test]
+    fn lots_near_the_origin_stay_where_they_are() {
+        let ring = [(0.0, 0.0), (60.0, 0.0), (30.1, 40.7)].map(|(x, y)| Point::new(x, y));
+        let raw = vec![RawPolygon {
+            rings: vec![ring.to_vec()],
+        }];
+        let plane = Plane::around(&raw, Coordinates::Plane(LengthUnit::Metre));
+        let origin = Point::ORIGIN;
+        assert_eq!(
+            plane,
+            Ok(Plane::Given {
+                unit: LengthUnit::Metre,
+                origin
+            })
+        );
+    }
+
+    #[test]
+    fn lots_across_the_180th_meridian_hang_together() {
+        let plane = degrees_plane(180.0, -16.5);
+        let [west, east] =
+            [179.9995, -179.9995].map(|x| plane.to_site(Point::new(x, -16.5)).expect("in range"));
+        assert!((east.x - west.x - 106.7).abs() < 0.5, "{west:?} {east:?}");
+        let back = plane.from_site(east);
+        assert!((back.x + 179.9995).abs() < 1e-12, "{back:?}");
+    }
+
+    #[test]
+    fn refuses_what_has_no_plane() {
+        #[track_caller]
+        fn check(corners: &[(f64, f64)], words: &str) {
+            let ring = corners.iter().map(|&(x, y)| Point::new(x, y)).collect();
+            let raw = [RawPolygon { rings: vec![ring] }];
+            let error = Plane::around(&raw, Coordinates::LonLat).expect_err("a refusal");
+            assert!(error.to_string().contains(words), "{error}");
+        }
+        check(&[(0.0, 0.0), (f64::NAN, 0.0)], "not finite");
+        check(&[(0.0, 90.5), (1.0, 0.0)], "use --plane");
+        check(&[(180.5, 0.0), (1.0, 0.0)], "use --plane");
+        check(&[(0.0, 89.5), (0.001, 89.5)], "pole");
+        check(&[(0.0, 0.0), (80.0, 0.0), (80.0, 50.0)], "km across");
+        check(&[], "no coordinates");
+    }
+}
