@@ -8,11 +8,15 @@ mod climb;
 mod index;
 mod piece;
 mod record;
+mod relief;
+mod report;
 mod roots;
 mod search;
 mod slide;
+mod spots;
 mod verify;
 
+pub use report::{BINDING_SPARE_M, LimitReport, Report, report};
 pub use search::Effort;
 pub use verify::{VerifyError, verified_radius};
 

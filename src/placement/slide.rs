@@ -45,7 +45,7 @@ pub(super) fn slide(index: &RowIndex, spot: &Spot) -> Option<[Point; 2]> {
 }
 
 /// The direction along the two rows that hold the spot between them, when there are two and they face each other.
-fn free_direction(index: &RowIndex, spot: &Spot) -> Option<Vec2> {
+pub(super) fn free_direction(index: &RowIndex, spot: &Spot) -> Option<Vec2> {
     let mut carrying = spot.carrying.iter().filter(|(_, y)| *y > 1e-9);
     let (Some(a), Some(b), None) = (carrying.next(), carrying.next(), carrying.next()) else {
         return None;
