@@ -126,13 +126,13 @@ impl<R: BufRead> Collection<R> {
             let is_features = self.envelope.get(at..) == Some(b"\"features\"".as_slice());
             self.bytes.expect(b':', "a colon")?;
             if is_features && self.bytes.peek_solid()? == Some(b'[') {
+                if self.has_features {
+                    return Err(self.bytes.unexpected("only one member \"features\""));
+                }
                 self.envelope.truncate(before);
                 self.bytes.bump(1);
                 self.has_features = true;
-                if self.go_on(false)? {
-                    return Ok(true);
-                }
-                return Ok(false);
+                return self.go_on(false);
             }
             self.envelope.push(b':');
             self.bytes.take_value(&mut self.envelope, "member")?;
@@ -390,6 +390,7 @@ mod tests {
         );
         check(r#"{"features":[{"a":1}"#, 1, "not the end of the file");
         check(r#"{"features":[{"a":1},]}"#, 1, "a value is expected");
+        check(r#"{"features":[],"features":[]}"#, 0, "only one member");
         check(r#"{"features":[]} x"#, 0, "the end of the file is expected");
         check(r#"{"features":[]"#, 0, "a comma or }");
         check(r#"{features:[]}"#, 0, "quotation marks");

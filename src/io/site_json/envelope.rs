@@ -15,6 +15,17 @@ use crate::io::visible;
 const BYTE_ORDER_MARK: &[u8] = b"\xef\xbb\xbf";
 /// Members beside the features that are ours.
 const OURS: [&str; 4] = ["setbacks", "structure", "rules", "yards"];
+/// Properties of ours, which beside `properties` would be passed over unseen.
+const PROPERTIES: [&str; 8] = [
+    "use",
+    "setback_m",
+    "setbacks_m",
+    "roles",
+    "class",
+    "required_m",
+    "kept",
+    "diameter_m",
+];
 /// How many characters before the place of a fault are shown.
 const SHOWN_BEFORE: usize = 24;
 
@@ -185,6 +196,15 @@ impl Numbered {
             (None, None) => String::new(),
         };
         let place = format!("feature {number}{id}");
+        let beside = feature.foreign_members.iter().flat_map(|m| m.keys());
+        if let Some(name) = beside
+            .into_iter()
+            .find(|n| PROPERTIES.contains(&n.as_str()))
+        {
+            return Err(format!(
+                "{place}: {name} stands beside properties: move it into them"
+            ));
+        }
         let kind_of_use = match feature.property("use") {
             Some(Value::String(kind)) => kind.clone(),
             None | Some(Value::Null) if only => "lot".to_owned(),

@@ -351,6 +351,10 @@ fn refuses_files_that_are_no_site() {
         "{\"type\":\"Fea\\u0007ture\"}",
         "the type is \"Fea\\u{7}ture\"",
     );
+    check(
+        "{\"type\":\"Feature\",\"setback_m\":3,\"geometry\":null,\"properties\":{}}",
+        "setback_m stands beside properties",
+    );
     check("{\"features\":[]}", "has the type \"FeatureCollection\"");
     check(
         "{\"type\":\"FeatureCollection\",\"features\":[{\"type\":\"Polygon\"}]}",
