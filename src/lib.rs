@@ -16,3 +16,7 @@ pub mod limits;
 pub mod placement;
 
 pub mod io;
+
+pub mod sweep;
+
+pub mod cli;
