@@ -28,7 +28,16 @@ impl Bounds {
     }
 
     pub fn union(self, other: Bounds) -> Bounds {
-        self.with(other.min).with(other.max)
+        Bounds {
+            min: Point::new(
+                lesser(self.min.x, other.min.x),
+                lesser(self.min.y, other.min.y),
+            ),
+            max: Point::new(
+                greater(self.max.x, other.max.x),
+                greater(self.max.y, other.max.y),
+            ),
+        }
     }
 
     pub fn is_empty(self) -> bool {
@@ -64,6 +73,25 @@ impl Bounds {
     /// The longer of the two sides, m.
     pub fn extent(self) -> f64 {
         self.width().max(self.height())
+    }
+
+    /// The box in two triangles, counter-clockwise.
+    pub fn halves(self) -> [[Point; 3]; 2] {
+        let (ne, sw) = (self.max, self.min);
+        let (nw, se) = (Point::new(sw.x, ne.y), Point::new(ne.x, sw.y));
+        [[sw, se, ne], [sw, ne, nw]]
+    }
+
+    /// A triangle with room round the box, counter-clockwise: legs of three times the box's sides from a quarter of a side
+    /// outside it, so that rounding never leaves a corner of the box outside.
+    pub fn triangle_round(self) -> [Point; 3] {
+        let (w, h) = (self.width(), self.height());
+        let corner = Point::new(self.min.x - 0.25 * w, self.min.y - 0.25 * h);
+        [
+            corner,
+            Point::new(corner.x + 3.0 * w, corner.y),
+            Point::new(corner.x, corner.y + 3.0 * h),
+        ]
     }
 
     pub fn centre(self) -> Point {

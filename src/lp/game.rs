@@ -19,6 +19,9 @@ const BROKEN: f64 = 1e-14;
 /// Smallest part of an entering constraint along a leaving one that a pivot may divide by.
 const PIVOT: f64 = 1e-11;
 
+/// How far below zero all columns must be to show that no point is left, relative to the entries: well clear of rounding.
+const SHOWN: f64 = 1e-12;
+
 /// One constraint p·x + q·y + e·r <= h in the plane coordinates (x, y) = (l_0, l_1) of the simplex.
 #[derive(Clone, Copy, Debug, Default)]
 struct Constraint {
@@ -264,7 +267,8 @@ impl Game {
             .iter_mut()
             .zip(weightless)
             .for_each(|(slot, other)| *slot = other);
-        let is_shown = self.rows[entering].w == 0.0 && self.greatest_column(&weights) < 0.0;
+        let is_shown =
+            self.rows[entering].w == 0.0 && self.greatest_column(&weights) < -SHOWN * self.scale;
         let (bound, point) = (f64::NEG_INFINITY, [1.0 / 3.0; 3]);
         is_shown.then(|| Value {
             bound,

@@ -3,7 +3,10 @@
 //! For what runs once a placement rather than once a piece: the convex-lot program, relief over tied multipliers, and later
 //! programs with many variables. The kernel of [`super::game`] is checked against it.
 
-use good_lp::{Expression, ProblemVariables, ResolutionError, Solution, SolverModel, constraint, microlp, variable};
+use good_lp::{
+    Expression, ProblemVariables, ResolutionError, Solution, SolverModel, constraint, microlp,
+    variable,
+};
 
 /// How a row compares its two sides.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -55,8 +58,14 @@ impl Model {
     /// When there is none.
     pub fn maximise(&self) -> Result<Optimum, ModelError> {
         let mut variables = ProblemVariables::new();
-        let x: Vec<_> = self.lower.iter().map(|&lower| variables.add(variable().min(lower))).collect();
-        let dot = |coefficients: &[f64]| -> Expression { coefficients.iter().zip(&x).map(|(&c, &v)| c * v).sum() };
+        let x: Vec<_> = self
+            .lower
+            .iter()
+            .map(|&lower| variables.add(variable().min(lower)))
+            .collect();
+        let dot = |coefficients: &[f64]| -> Expression {
+            coefficients.iter().zip(&x).map(|(&c, &v)| c * v).sum()
+        };
         let mut model = variables.maximise(dot(&self.objective)).using(microlp);
         for row in &self.rows {
             let left = dot(&row.coefficients);
@@ -100,8 +109,11 @@ pub fn chebyshev(half_planes: &[HalfPlane]) -> Result<[f64; 3], ModelError> {
         right: h.b,
     };
     let free = f64::NEG_INFINITY;
-    let model =
-        Model { objective: vec![0.0, 0.0, 1.0], lower: vec![free; 3], rows: half_planes.iter().map(row).collect() };
+    let model = Model {
+        objective: vec![0.0, 0.0, 1.0],
+        lower: vec![free; 3],
+        rows: half_planes.iter().map(row).collect(),
+    };
     let x = model.maximise()?.x;
     Ok([x[0], x[1], x[2]])
 }
@@ -121,12 +133,29 @@ mod tests {
 
     #[test]
     fn infeasible_and_unbounded_programs_say_so() {
-        let row = |c: f64, compare, right| ModelRow { coefficients: vec![c], compare, right };
-        let mut model = Model { objective: vec![1.0], lower: vec![0.0], rows: vec![] };
+        let row = |c: f64, compare, right| ModelRow {
+            coefficients: vec![c],
+            compare,
+            right,
+        };
+        let mut model = Model {
+            objective: vec![1.0],
+            lower: vec![0.0],
+            rows: vec![],
+        };
         assert_eq!(model.maximise(), Err(ModelError::Unbounded));
-        model.rows = vec![row(1.0, Compare::AtMost, 1.0), row(1.0, Compare::AtLeast, 2.0)];
+        model.rows = vec![
+            row(1.0, Compare::AtMost, 1.0),
+            row(1.0, Compare::AtLeast, 2.0),
+        ];
         assert_eq!(model.maximise(), Err(ModelError::Infeasible));
         model.rows = vec![row(2.0, Compare::Equal, 3.0)];
-        assert_eq!(model.maximise(), Ok(Optimum { value: 1.5, x: vec![1.5] }));
+        assert_eq!(
+            model.maximise(),
+            Ok(Optimum {
+                value: 1.5,
+                x: vec![1.5]
+            })
+        );
     }
 }

@@ -201,3 +201,11 @@ pub(super) fn game_entry(row: &Row, c: Point) -> f64 {
 pub(super) fn game_weight(row: &Row) -> f64 {
     if row.otherwise.is_none() { row.w } else { 1.0 }
 }
+
+/// How fast [`game_entry`] can change with the place.
+pub(super) fn steepness(row: &Row) -> f64 {
+    let per = |w: f64| if w > 0.0 { 1.0 / w } else { 0.0 };
+    row.otherwise
+        .as_ref()
+        .map_or(1.0, |otherwise| per(row.w).max(per(otherwise.w)))
+}

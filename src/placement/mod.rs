@@ -4,9 +4,11 @@
 //! ([`piece`]), climbs from what it meets ([`climb`]) and ends when no piece can hold a better centre. What leaves this
 //! module has passed [`verify`], which shares no code with the search.
 
+pub mod check;
 mod climb;
 mod index;
 mod piece;
+mod proof;
 mod record;
 mod relief;
 mod report;
@@ -16,6 +18,10 @@ mod slide;
 mod spots;
 mod verify;
 
+pub use check::{CheckError, Checked, check};
+pub use proof::{
+    PROOF_VERSION, Proof, ProofCover, ProofDisc, ProofPiece, ProvenCircle, prove, site_hash,
+};
 pub use report::{BINDING_SPARE_M, LimitReport, Report, report};
 pub use search::Effort;
 pub use verify::{VerifyError, verified_radius};
@@ -67,10 +73,6 @@ pub enum PlaceError {
     Verify(#[from] VerifyError),
 }
 
-/// Bounds are raised by this, relative to the size of the coordinates, for the rounding of the distances they are made of:
-/// a few units in the last place each.
-const BOUND_ROUNDING: f64 = 4e-15;
-
 /// The largest circle of a site, with the site's limits as its rows have it.
 ///
 /// What comes back: a verified circle, and a bound on the diameter of every other; their difference is at most
@@ -113,9 +115,7 @@ fn finished(
     snap: &dyn Fn(Point) -> Point,
 ) -> Result<Placement, PlaceError> {
     let limits = index.limits();
-    let bounds = limits.region.bounds();
-    let size = bounds.extent() + bounds.centre().to_vec2().length();
-    let upper_m = 2.0 * (found.upper + BOUND_ROUNDING * size);
+    let upper_m = 2.0 * found.upper;
     let circle = found.best.map(|spot| {
         let slide = slide::slide(index, &spot);
         let centre = snap(slide.map_or(spot.centre, |[from, to]| from.midpoint(to)));

@@ -25,6 +25,8 @@ pub(super) struct Piece {
     pub bound: f64,
     pub weights: [Weighted; 3],
     pub handed: Handed,
+    /// Cuts above it.
+    pub depth: u16,
     /// Its place in the proof's tree, when one is kept.
     pub node: u32,
 }

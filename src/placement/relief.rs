@@ -38,14 +38,21 @@ pub(super) struct Gain {
 pub(super) fn gains(limits: &Limits, site: &Site, centre: Point) -> Vec<Gain> {
     let mut gains = vec![Gain::default(); limits.limits.len()];
     let binding = Binding::at(limits, centre);
-    let Some((balance, y)) = BALANCE.into_iter().find_map(|b| Some((b, binding.weights(b, None)?))) else {
+    let Some((balance, y)) = BALANCE
+        .into_iter()
+        .find_map(|b| Some((b, binding.weights(b, None)?)))
+    else {
         return gains;
     };
     for (&row, &y) in binding.rows.iter().zip(&y) {
         gains[limits.rows[row].limit as usize].multiplier += y;
     }
     for (i, limit) in limits.limits.iter().enumerate() {
-        let rates: Vec<f64> = binding.rows.iter().map(|&row| rate(limits, site, (i, limit), row, centre)).collect();
+        let rates: Vec<f64> = binding
+            .rows
+            .iter()
+            .map(|&row| rate(limits, site, (i, limit), row, centre))
+            .collect();
         if rates.iter().any(|&rate| rate > 0.0)
             && let Some(y) = binding.weights(balance, Some(&rates))
         {
@@ -64,44 +71,78 @@ struct Binding {
 
 impl Binding {
     fn at(limits: &Limits, centre: Point) -> Binding {
-        let least = limits.rows.iter().map(|row| row.radius(centre)).fold(f64::INFINITY, f64::min);
-        let rows: Vec<usize> =
-            (0..limits.rows.len()).filter(|&i| limits.rows[i].radius(centre) <= least + BINDS_M).collect();
+        let least = limits
+            .rows
+            .iter()
+            .map(|row| row.radius(centre))
+            .fold(f64::INFINITY, f64::min);
+        let rows: Vec<usize> = (0..limits.rows.len())
+            .filter(|&i| limits.rows[i].radius(centre) <= least + BINDS_M)
+            .collect();
         let gradient = |&i: &usize| {
             let nearest = limits.rows[i].feature.nearest(centre);
             let slope = limits.rows[i].slope_at(nearest.distance);
             [slope * nearest.away.x, slope * nearest.away.y]
         };
-        Binding { gradients: rows.iter().map(gradient).collect(), rows }
+        Binding {
+            gradients: rows.iter().map(gradient).collect(),
+            rows,
+        }
     }
 
     /// Multipliers that balance the gradients within `balance`; with `rates`, those with the least growth.
     fn weights(&self, balance: f64, rates: Option<&[f64]>) -> Option<Vec<f64>> {
         let n = self.rows.len();
         let part = |k: usize| self.gradients.iter().map(|g| g[k]).collect::<Vec<f64>>();
-        let row = |coefficients, compare, right| ModelRow { coefficients, compare, right };
+        let row = |coefficients, compare, right| ModelRow {
+            coefficients,
+            compare,
+            right,
+        };
         let mut rows = vec![row(vec![1.0; n], Compare::Equal, 1.0)];
         for k in [0, 1] {
             rows.push(row(part(k), Compare::AtMost, balance));
             rows.push(row(part(k), Compare::AtLeast, -balance));
         }
-        let objective = rates.map_or(vec![0.0; n], |rates| rates.iter().map(|rate| -rate).collect());
-        Some(Model { objective, lower: vec![0.0; n], rows }.maximise().ok()?.x)
+        let objective = rates.map_or(vec![0.0; n], |rates| {
+            rates.iter().map(|rate| -rate).collect()
+        });
+        Some(
+            Model {
+                objective,
+                lower: vec![0.0; n],
+                rows,
+            }
+            .maximise()
+            .ok()?
+            .x,
+        )
     }
 }
 
 /// How fast a row's radius grows with relief of a limit, at a fixed centre.
-fn rate(limits: &Limits, site: &Site, (index, limit): (usize, &Limit), row: usize, centre: Point) -> f64 {
+fn rate(
+    limits: &Limits,
+    site: &Site,
+    (index, limit): (usize, &Limit),
+    row: usize,
+    centre: Point,
+) -> f64 {
     let site_row = &limits.rows[row];
-    let asks = limit.measure.fixed_m > 0.0 || limit.measure.share > 0.0 || limit.measure.floor_m.is_some_and(|f| f > 0.0);
-    let is_drawn = matches!(site_row.feature, Feature::Convex(_)) && row < limits.region.n_lot_segments();
+    let asks = limit.measure.fixed_m > 0.0
+        || limit.measure.share > 0.0
+        || limit.measure.floor_m.is_some_and(|f| f > 0.0);
+    let is_drawn =
+        matches!(site_row.feature, Feature::Convex(_)) && row < limits.region.n_lot_segments();
     match limit.thing {
         _ if !asks => 0.0,
         Thing::LotLine(line) if limit.origin == Origin::Setback && is_drawn => {
             let slope = site_row.slope_at(site_row.feature.distance(centre));
             slope * yard_rate(site, line, row, centre)
         }
-        _ if site_row.limit as usize == index => site_row.slope_at(site_row.feature.distance(centre)),
+        _ if site_row.limit as usize == index => {
+            site_row.slope_at(site_row.feature.distance(centre))
+        }
         _ => 0.0,
     }
 }
@@ -122,7 +163,9 @@ fn yard_rate(site: &Site, line: usize, segment: usize, centre: Point) -> f64 {
 
 /// Whether a segment or one of its neighbours belongs to a lot line.
 fn touches(site: &Site, line: usize, segment: usize) -> bool {
-    let Some((base, n)) = ring_of(site, segment) else { return false };
+    let Some((base, n)) = ring_of(site, segment) else {
+        return false;
+    };
     let i = segment - base;
     let of = |i: usize| site.lot.line_of_segments()[base + i] as usize;
     [of((i + n - 1) % n), of(i), of((i + 1) % n)].contains(&line)
@@ -140,11 +183,23 @@ fn ring_of(site: &Site, segment: usize) -> Option<(usize, usize)> {
     None
 }
 
-fn drawn_yard_distance(site: &Site, line: usize, segment: usize, centre: Point, relief_m: f64) -> f64 {
+fn drawn_yard_distance(
+    site: &Site,
+    line: usize,
+    segment: usize,
+    centre: Point,
+    relief_m: f64,
+) -> f64 {
     let lot = &site.lot;
-    let Some((base, _)) = ring_of(site, segment) else { return 0.0 };
+    let Some((base, _)) = ring_of(site, segment) else {
+        return 0.0;
+    };
     let setback_m = |i: usize| {
-        let relief_m = if lot.line_of_segments()[base + i] as usize == line { relief_m } else { 0.0 };
+        let relief_m = if lot.line_of_segments()[base + i] as usize == line {
+            relief_m
+        } else {
+            0.0
+        };
         lot.boundary()[base + i].setback_m - relief_m
     };
     let mut first = 0;
@@ -152,7 +207,10 @@ fn drawn_yard_distance(site: &Site, line: usize, segment: usize, centre: Point, 
         if first == base {
             let drawn = yard::yard(ring, setback_m, segment - base);
             let feature = drawn.map(|yard| Feature::Convex(yard.corners()[..].into()));
-            return feature.map_or_else(|| ring.segment(segment - base).distance(centre), |f| f.distance(centre));
+            return feature.map_or_else(
+                || ring.segment(segment - base).distance(centre),
+                |f| f.distance(centre),
+            );
         }
         first += ring.len();
     }
@@ -165,8 +223,18 @@ pub(super) fn yard_distance_m(site: &Site, line: usize, centre: Point) -> Option
     if site.reading != YardReading::Parallel || lot_line.setback_m <= 0.0 {
         return None;
     }
-    let base: usize = site.lot.area().rings().take(lot_line.ring).map(|r| r.len()).sum();
+    let base: usize = site
+        .lot
+        .area()
+        .rings()
+        .take(lot_line.ring)
+        .map(|r| r.len())
+        .sum();
     let n = site.lot.area().rings().nth(lot_line.ring)?.len();
     let segments = (0..lot_line.len).map(|k| base + (lot_line.first + k) % n);
-    Some(segments.map(|s| drawn_yard_distance(site, line, s, centre, 0.0)).fold(f64::INFINITY, f64::min))
+    Some(
+        segments
+            .map(|s| drawn_yard_distance(site, line, s, centre, 0.0))
+            .fold(f64::INFINITY, f64::min),
+    )
 }

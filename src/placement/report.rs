@@ -79,18 +79,40 @@ pub fn report(
     };
     let other_placement = largest(&Limits::new(&other)?, &other, effort, snap)?;
     let other_reading_diameter_m = other_placement.circle.map(|circle| circle.diameter_m);
-    Ok(Report { limits: limit_reports, other_spots: spots, other_reading_diameter_m })
+    Ok(Report {
+        limits: limit_reports,
+        other_spots: spots,
+        other_reading_diameter_m,
+    })
 }
 
-fn limit_reports(limits: &Limits, site: &Site, circle: &Circle, spots: &[Circle]) -> Vec<LimitReport> {
+fn limit_reports(
+    limits: &Limits,
+    site: &Site,
+    circle: &Circle,
+    spots: &[Circle],
+) -> Vec<LimitReport> {
     let here = gains(limits, site, circle.centre);
     let mut best = here.clone();
     for centre in tied_centres(circle, spots) {
         let there = gains(limits, site, centre);
-        best.iter_mut().zip(there).for_each(|(best, there)| best.gain = best.gain.max(there.gain));
+        best.iter_mut()
+            .zip(there)
+            .for_each(|(best, there)| best.gain = best.gain.max(there.gain));
     }
     let all = limits.limits.iter().enumerate().zip(here.iter().zip(best));
-    all.map(|((i, limit), (here, best))| limit_report(site, circle, (i, limit), Gain { gain: best.gain, ..*here })).collect()
+    all.map(|((i, limit), (here, best))| {
+        limit_report(
+            site,
+            circle,
+            (i, limit),
+            Gain {
+                gain: best.gain,
+                ..*here
+            },
+        )
+    })
+    .collect()
 }
 
 /// Best centres beside the circle's own: along its slide, and at spots as large.
@@ -100,11 +122,21 @@ fn tied_centres(circle: &Circle, spots: &[Circle]) -> Vec<Point> {
         let last = (SLIDE_PLACES - 1) as f64;
         centres.extend((0..SLIDE_PLACES).map(|k| from.lerp(to, k as f64 / last)));
     }
-    centres.extend(spots.iter().filter(|s| s.diameter_m >= circle.diameter_m - TIE_M).map(|s| s.centre));
+    centres.extend(
+        spots
+            .iter()
+            .filter(|s| s.diameter_m >= circle.diameter_m - TIE_M)
+            .map(|s| s.centre),
+    );
     centres
 }
 
-fn limit_report(site: &Site, circle: &Circle, (index, limit): (usize, &Limit), gain: Gain) -> LimitReport {
+fn limit_report(
+    site: &Site,
+    circle: &Circle,
+    (index, limit): (usize, &Limit),
+    gain: Gain,
+) -> LimitReport {
     let required_m = limit.measure.required_m(circle.diameter_m);
     let start_m = limit.measure.start_radius_m(circle.diameter_m);
     let clearance_m = limit.thing.distance_m(site, circle.centre) - start_m.unwrap_or(0.0);
@@ -112,7 +144,9 @@ fn limit_report(site: &Site, circle: &Circle, (index, limit): (usize, &Limit), g
         (Origin::Setback, Thing::LotLine(line)) => yard_distance_m(site, line, circle.centre),
         _ => None,
     };
-    let spare_m = to_yard_m.map_or(clearance_m - required_m, |distance_m| distance_m - 0.5 * circle.diameter_m);
+    let spare_m = to_yard_m.map_or(clearance_m - required_m, |distance_m| {
+        distance_m - 0.5 * circle.diameter_m
+    });
     LimitReport {
         limit: index,
         required_m,

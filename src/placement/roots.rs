@@ -5,7 +5,7 @@
 //! instead, because a triangulation would cost more than the search.
 
 use super::piece::Triangle;
-use crate::geom::{Area, Bounds, Point, Polygon, triangulate};
+use crate::geom::{Area, Bounds, Polygon, triangulate};
 use crate::limits::{Limits, LotRows};
 
 /// How the roots were made; what a check needs to see that they cover the region.
@@ -38,12 +38,12 @@ pub(super) fn roots(lot: &Area, limits: &Limits) -> Roots {
     let bounds = limits.region.bounds();
     if limits.lot_rows == LotRows::HalfPlanes {
         return Roots {
-            triangles: vec![round(bounds)],
+            triangles: vec![bounds.triangle_round()],
             cover: Cover::Round,
         };
     }
     let boxed = || Roots {
-        triangles: box_halves(bounds).to_vec(),
+        triangles: bounds.halves().to_vec(),
         cover: Cover::Box,
     };
     if fills_its_box(lot, bounds) {
@@ -81,23 +81,4 @@ pub(super) fn on_corners(parts: &[Polygon], cut: &[Vec<[u32; 3]>]) -> Vec<Triang
         triangles.extend(cut.iter().map(|t| t.map(|i| corners[i as usize])));
     }
     triangles
-}
-
-/// A triangle with room round the box: its legs are twice the box's sides and half a side longer each, so that rounding
-/// never leaves a corner of the box outside.
-pub(super) fn round(b: Bounds) -> Triangle {
-    let (w, h) = (b.width(), b.height());
-    let corner = Point::new(b.min.x - 0.25 * w, b.min.y - 0.25 * h);
-    [
-        corner,
-        Point::new(corner.x + 3.0 * w, corner.y),
-        Point::new(corner.x, corner.y + 3.0 * h),
-    ]
-}
-
-/// The box in two triangles.
-pub(super) fn box_halves(b: Bounds) -> [Triangle; 2] {
-    let (ne, sw) = (b.max, b.min);
-    let (nw, se) = (Point::new(sw.x, ne.y), Point::new(ne.x, sw.y));
-    [[sw, se, ne], [sw, ne, nw]]
 }

@@ -8,7 +8,7 @@ use std::collections::BinaryHeap;
 use std::sync::atomic::{AtomicBool, Ordering as Memory};
 
 use super::climb::{SettledDisc, Spot, climb, settled_disc};
-use super::index::{Least, RowIndex, game_weight};
+use super::index::{Least, RowIndex, game_weight, steepness};
 use super::piece::{Handed, Looked, Piece, Triangle, halves, longest_side2, look};
 use super::record::{Leaf, Record};
 use super::roots::{Cover, Roots};
@@ -52,8 +52,6 @@ pub(super) struct Found {
     pub upper: f64,
     pub n_pieces: usize,
     pub end: End,
-    /// Spots climbed to on the way, each better than those before.
-    pub spots: Vec<Spot>,
 }
 
 /// A share of the gap in which the search drops pieces, so that rounding of bounds has room in the rest. In radii: half of
@@ -74,6 +72,9 @@ const NEAR_TIE: f64 = 0.98;
 /// Near ties that are climbed to at the most: discs are looked through one by one.
 const MAX_CLIMBED: usize = 64;
 
+/// Units in the last place that a bound may be off by: a distance takes about ten operations.
+const UNITS_A_BOUND: u16 = 16;
+
 /// Pieces between two looks at the cancel flag.
 const CANCEL_EVERY: usize = 256;
 
@@ -89,10 +90,13 @@ pub(super) struct Search<'a> {
     heap: BinaryHeap<ByBound>,
     discs: Vec<SettledDisc>,
     best: Option<Spot>,
-    spots: Vec<Spot>,
     /// Triples of rows whose common spot has been climbed to as a near tie.
     climbed: Vec<[u32; 3]>,
     dropped: f64,
+    /// Most cuts above a piece.
+    deepest: u16,
+    /// How fast any bound used can change with the place, 1 for plain distances.
+    steepest: f64,
     n_pieces: usize,
     record: Option<Record>,
 }
@@ -129,9 +133,10 @@ impl<'a> Search<'a> {
             heap: BinaryHeap::new(),
             discs: Vec::new(),
             best: None,
-            spots: Vec::new(),
             climbed: Vec::new(),
             dropped: 0.0,
+            deepest: 0,
+            steepest: 1.0,
             n_pieces: 0,
             record,
         }
@@ -140,7 +145,7 @@ impl<'a> Search<'a> {
     /// Runs to the end.
     pub fn run(mut self, roots: &Roots) -> (Found, Option<Record>) {
         self.is_boxed = roots.cover == Cover::Box;
-        self.may_be_outside = roots.cover == Cover::Box || self.index.limits().region.is_cut();
+        self.may_be_outside = self.is_boxed || self.index.limits().region.is_cut();
         self.start(roots);
         let mut end = End::Done;
         while let Some(ByBound(_, i)) = self.heap.pop() {
@@ -154,101 +159,136 @@ impl<'a> Search<'a> {
                 end = early;
                 break;
             }
-            self.cut(&piece.corners, &piece.handed, piece.bound, piece.node);
+            self.cut(&piece);
         }
         for ByBound(_, i) in std::mem::take(&mut self.heap) {
             let piece = self.pieces[i as usize];
             self.drop_bounded(&piece);
         }
-        let upper = self.best.map_or(0.0, |b| b.radius).max(self.dropped);
+        let upper = self.best_radius().max(self.dropped) + self.sliver(roots);
         (
             Found {
                 best: self.best,
                 upper,
                 n_pieces: self.n_pieces,
                 end,
-                spots: self.spots,
             },
             self.record,
         )
     }
 
+    /// What a radius can change across the slivers that rounded midpoints leave between pieces, and by the rounding of the
+    /// distances a bound is made of; a few units in the last place a cut.
+    fn sliver(&self, roots: &Roots) -> f64 {
+        let size = roots
+            .triangles
+            .iter()
+            .flatten()
+            .map(|c| c.x.abs().max(c.y.abs()))
+            .fold(0.0, f64::max);
+        size * f64::EPSILON * f64::from(self.deepest + UNITS_A_BOUND) * self.steepest
+    }
+
     /// Takes in the roots, the largest first, so that the first spots climbed to are good ones.
     fn start(&mut self, roots: &Roots) {
-        let mut order: Vec<(f64, u32)> = (0..)
+        let sides = (0..)
             .zip(&roots.triangles)
-            .map(|(i, t)| (longest_side2(t), i))
-            .collect();
+            .map(|(i, t)| (longest_side2(t), i));
+        let mut order: Vec<(f64, u32)> = sides.collect();
         order.sort_unstable_by(|a, b| b.0.total_cmp(&a.0).then(a.1.cmp(&b.1)));
         let on_boundary = matches!(roots.cover, Cover::Triangles(_));
         for (side2, i) in order {
             let t = roots.triangles[i as usize];
             // Every centre lies within side / √3 of a corner, and corners on the boundary allow nothing.
-            if on_boundary && (side2 / 3.0).sqrt() <= self.best.map_or(0.0, |b| b.radius) {
+            if on_boundary && (side2 / 3.0).sqrt() <= self.best_radius() {
                 self.note(i, Leaf::NearCorners);
                 continue;
             }
             let seed = self.weighty_row(centroid(&t));
-            self.take(t, &Handed::one(self.index, seed, &t), f64::INFINITY, i);
+            let handed = Handed::one(self.index, seed, &t);
+            self.take(Piece {
+                corners: t,
+                bound: f64::INFINITY,
+                weights: [(seed, 0.0); 3],
+                handed,
+                depth: 0,
+                node: i,
+            });
         }
     }
 
-    /// Looks at a triangle: takes what it offers, drops it or keeps it for bisection.
-    fn take(&mut self, corners: Triangle, handed: &Handed, parent: f64, node: u32) {
+    /// Looks at a piece that comes with what is known of the one it was cut from: takes what it offers, drops it or keeps it
+    /// for bisection.
+    fn take(&mut self, mut piece: Piece) {
         self.n_pieces += 1;
-        if let Some(i) = self.discs.iter().position(|d| d.holds(&corners)) {
-            self.note(node, Leaf::Settled(i as u32));
+        if let Some(i) = self.discs.iter().position(|d| d.holds(&piece.corners)) {
+            self.note(piece.node, Leaf::Settled(i as u32));
             return;
         }
-        if self.is_hopelessly_large(&corners) {
-            self.cut(&corners, handed, parent, node);
+        if self.is_hopelessly_large(&piece) {
+            self.keep(piece);
             return;
         }
         let enough = self.enough();
-        let looked = look(self.index, &mut self.game, &corners, handed, enough);
-        let mut is_outside = false;
-        if looked.least.radius > self.best.map_or(0.0, |b| b.radius) {
-            is_outside = !self.offer(&looked);
+        let looked = look(
+            self.index,
+            &mut self.game,
+            &piece.corners,
+            &piece.handed,
+            enough,
+        );
+        let is_outside = looked.least.radius > self.best_radius() && !self.offer(&looked);
+        if looked.bound < piece.bound {
+            (piece.bound, piece.weights) = (looked.bound, looked.weights);
         }
-        let bound = looked.bound.min(parent);
-        let piece = Piece {
-            corners,
-            bound,
-            weights: looked.weights,
-            handed: looked.handed,
-            node,
-        };
-        if bound <= self.enough() {
+        piece.handed = looked.handed;
+        if piece.bound <= self.enough() {
             self.drop_bounded(&piece);
-        } else if is_outside && self.clears_boundary(&corners, looked.point) {
-            self.note(node, Leaf::Outside);
+        } else if is_outside && self.clears_boundary(&piece.corners, looked.point) {
+            self.note(piece.node, Leaf::Outside);
         } else {
             if !is_outside {
                 self.settle_near_tie(&looked);
             }
-            self.heap.push(ByBound(bound, self.pieces.len() as u32));
-            self.pieces.push(piece);
+            self.keep(piece);
         }
     }
 
-    /// Cuts a triangle in two and takes the halves.
-    fn cut(&mut self, corners: &Triangle, handed: &Handed, bound: f64, node: u32) {
-        let nodes = self.record.as_mut().map_or([0; 2], |r| r.split(node));
-        for ((half, handed), node) in halves(self.index, corners, handed).into_iter().zip(nodes) {
-            self.take(half, &handed, bound, node);
+    fn keep(&mut self, piece: Piece) {
+        self.heap
+            .push(ByBound(piece.bound, self.pieces.len() as u32));
+        self.pieces.push(piece);
+    }
+
+    /// Cuts a piece in two and takes the halves.
+    fn cut(&mut self, piece: &Piece) {
+        let nodes = self.record.as_mut().map_or([0; 2], |r| r.split(piece.node));
+        let depth = piece.depth + 1;
+        self.deepest = self.deepest.max(depth);
+        for ((corners, handed), node) in halves(self.index, &piece.corners, &piece.handed)
+            .into_iter()
+            .zip(nodes)
+        {
+            self.take(Piece {
+                corners,
+                handed,
+                depth,
+                node,
+                ..*piece
+            });
         }
     }
 
-    /// Whether a triangle of the box is so large beside the best circle that no bound would drop it.
-    fn is_hopelessly_large(&self, corners: &Triangle) -> bool {
-        let best = self.best.map_or(f64::INFINITY, |b| b.radius);
-        self.is_boxed && longest_side2(corners) > (HOPELESS * best).powi(2)
+    /// Whether a piece of the box is so large beside the best circle that no bound would drop it.
+    fn is_hopelessly_large(&self, piece: &Piece) -> bool {
+        let is_cut_off = self.is_boxed && piece.depth > 0 && self.best.is_some();
+        is_cut_off && longest_side2(&piece.corners) > (HOPELESS * self.best_radius()).powi(2)
     }
 
     /// Settles the room round a piece's point when it is nearly as good as the best, and held by three rows that have not
     /// been climbed from yet.
     fn settle_near_tie(&mut self, looked: &Looked) {
-        let best = self.best.map_or(0.0, |b| b.radius);
+        let best = self.best_radius();
         if !(NEAR_TIE * best..=best).contains(&looked.least.radius)
             || self.climbed.len() >= MAX_CLIMBED
         {
@@ -270,7 +310,6 @@ impl<'a> Search<'a> {
         if spot.radius > best {
             self.best = Some(spot);
         }
-        self.spots.push(spot);
         self.settle(&spot);
     }
 
@@ -281,7 +320,6 @@ impl<'a> Search<'a> {
         }
         let spot = self.climb_from(looked);
         self.best = Some(spot);
-        self.spots.push(spot);
         self.settle(&spot);
         true
     }
@@ -336,7 +374,7 @@ impl<'a> Search<'a> {
 
     /// The radius a piece must promise to be worth more work.
     fn enough(&self) -> f64 {
-        self.best.map_or(0.0, |b| b.radius) + DROP_SHARE * self.effort.gap_m
+        self.best_radius() + DROP_SHARE * self.effort.gap_m
     }
 
     fn must_end(&self) -> Option<End> {
@@ -353,7 +391,13 @@ impl<'a> Search<'a> {
 
     fn drop_bounded(&mut self, piece: &Piece) {
         self.dropped = self.dropped.max(piece.bound);
+        let steepness = |&(row, weight): &(u32, f64)| weight * steepness(self.index.row(row));
+        self.steepest = self.steepest.max(piece.weights.iter().map(steepness).sum());
         self.note(piece.node, Leaf::Bounded(piece.weights));
+    }
+
+    fn best_radius(&self) -> f64 {
+        self.best.map_or(0.0, |best| best.radius)
     }
 
     fn note(&mut self, node: u32, leaf: Leaf) {

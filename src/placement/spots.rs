@@ -3,11 +3,11 @@
 //! Climbs from a lattice of places over the lot, each ending at a spot held from all sides or between two facing rows. They
 //! are verified, and they are what the climbs met: not proven to be the next best.
 
+use super::Circle;
 use super::climb::{Spot, climb, settled_disc};
 use super::index::RowIndex;
 use super::slide::free_direction;
 use super::verify::verified_radius;
-use super::Circle;
 use crate::geom::{Point, triangulate};
 use crate::lp::game::Game;
 use crate::site::Site;
@@ -22,7 +22,12 @@ const LATTICE: usize = 16;
 const MAX_CORNERS: usize = 400;
 
 /// The best spots beside `best`, largest first; none has its centre in the circle of a better one.
-pub(super) fn other_spots(index: &RowIndex, site: &Site, best: &Circle, snap: &dyn Fn(Point) -> Point) -> Vec<Circle> {
+pub(super) fn other_spots(
+    index: &RowIndex,
+    site: &Site,
+    best: &Circle,
+    snap: &dyn Fn(Point) -> Point,
+) -> Vec<Circle> {
     let mut game = Game::new();
     let mut found: Vec<Spot> = starts(index, site)
         .into_iter()
@@ -38,8 +43,17 @@ pub(super) fn other_spots(index: &RowIndex, site: &Site, best: &Circle, snap: &d
         let is_apart = |c: &Circle| distance_to(c, spot.centre) > 0.5 * c.diameter_m;
         if taken.len() <= MAX_SPOTS && taken.iter().all(is_apart) {
             let centre = snap(spot.centre);
-            if let Ok(radius) = verified_radius(index.limits(), centre, spot.radius.min(index.least(centre, std::iter::empty()).radius)) {
-                taken.push(Circle { centre, diameter_m: 2.0 * radius, slide: None });
+            if let Ok(radius) = verified_radius(
+                index.limits(),
+                centre,
+                spot.radius
+                    .min(index.least(centre, std::iter::empty()).radius),
+            ) {
+                taken.push(Circle {
+                    centre,
+                    diameter_m: 2.0 * radius,
+                    slide: None,
+                });
             }
         }
     }
@@ -59,7 +73,10 @@ fn starts(index: &RowIndex, site: &Site) -> Vec<Point> {
     let at = |i: usize| (i as f64 + 0.5) / LATTICE as f64;
     let place = |k: usize| {
         let (x, y) = (at(k % LATTICE), at(k / LATTICE));
-        Point::new(bounds.min.x + x * bounds.width(), bounds.min.y + y * bounds.height())
+        Point::new(
+            bounds.min.x + x * bounds.width(),
+            bounds.min.y + y * bounds.height(),
+        )
     };
     let mut starts: Vec<Point> = (0..LATTICE * LATTICE).map(place).collect();
     let area = site.lot.area();
@@ -70,7 +87,12 @@ fn starts(index: &RowIndex, site: &Site) -> Vec<Point> {
                 let [a, b, c] = t.map(|i| corners[i as usize]);
                 Point::new((a.x + b.x + c.x) / 3.0, (a.y + b.y + c.y) / 3.0)
             };
-            starts.extend(triangulate::triangulate(part).unwrap_or_default().into_iter().map(centroid));
+            starts.extend(
+                triangulate::triangulate(part)
+                    .unwrap_or_default()
+                    .into_iter()
+                    .map(centroid),
+            );
         }
     }
     starts
