@@ -53,9 +53,17 @@ impl Failure {
     pub fn show(&self) -> Exit {
         let mut text = String::new();
         for problem in &self.problems {
-            let place = self.file.as_ref().map(|file| format!("{}: ", visible(file)));
+            let place = self
+                .file
+                .as_ref()
+                .map(|file| format!("{}: ", visible(file)));
             // Writing to a text cannot fail.
-            let _ = writeln!(text, "error: {}{}", place.unwrap_or_default(), visible(problem));
+            let _ = writeln!(
+                text,
+                "error: {}{}",
+                place.unwrap_or_default(),
+                visible(problem)
+            );
         }
         // Where stderr is closed there is nobody to tell.
         let _ = io::stderr().write_all(text.as_bytes());
@@ -93,7 +101,10 @@ mod tests {
 
     #[test]
     fn control_characters_are_seen_and_not_obeyed() {
-        assert_eq!(visible("a\u{1b}[31mb\n\u{202e}é"), "a\\u{1b}[31mb\\n\\u{202e}é");
+        assert_eq!(
+            visible("a\u{1b}[31mb\n\u{202e}é"),
+            "a\\u{1b}[31mb\\n\\u{202e}é"
+        );
         assert_eq!(visible_lines("a\u{7}\nb\n"), "a\\u{7}\nb\n");
     }
 }

@@ -79,9 +79,17 @@ pub fn create_apart(input: &Path, outputs: &[&Path]) -> Result<Vec<File>, Failur
     for (i, output) in outputs.iter().enumerate() {
         let cannot = |e| Failure::writing(&output.display().to_string(), e);
         refuse_input(input, output)?;
-        let opened = OpenOptions::new().write(true).create(true).truncate(false).open(output);
+        let opened = OpenOptions::new()
+            .write(true)
+            .create(true)
+            .truncate(false)
+            .open(output);
         files.push(opened.map_err(cannot)?);
-        if let Some(other) = outputs.iter().take(i).find(|other| is_same_file(other, output)) {
+        if let Some(other) = outputs
+            .iter()
+            .take(i)
+            .find(|other| is_same_file(other, output))
+        {
             return Err(Failure::usage(format!(
                 "{} and {} are one file: name two",
                 other.display(),

@@ -10,7 +10,9 @@ use crate::geom::Point;
 use crate::io::plane::{Plane, Snapped};
 use crate::io::site_json::Imported;
 use crate::limits::Limits;
-use crate::placement::{Effort, PlaceError, Placement, Proof, Report, Status, largest, prove, report};
+use crate::placement::{
+    Effort, PlaceError, Placement, Proof, Report, Status, largest, prove, report,
+};
 
 /// A site with its placement.
 pub struct Outcome {
@@ -49,8 +51,7 @@ impl Outcome {
         let begun = Instant::now();
         let limits = Limits::new(site).map_err(|e| place_failure(e.into()))?;
         let (placement, proof) = if with_proof {
-            let (placement, proof) =
-                prove(&limits, site, effort, &snap).map_err(place_failure)?;
+            let (placement, proof) = prove(&limits, site, effort, &snap).map_err(place_failure)?;
             (placement, Some(proof))
         } else {
             let placement = largest(&limits, site, effort, &snap).map_err(place_failure)?;

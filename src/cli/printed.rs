@@ -110,7 +110,10 @@ impl Printer<'_> {
                     continue;
                 };
                 let allowed_m = self.allowed_diameter_m(at);
-                if best.as_ref().is_none_or(|(_, _, best_m)| allowed_m > *best_m) {
+                if best
+                    .as_ref()
+                    .is_none_or(|(_, _, best_m)| allowed_m > *best_m)
+                {
                     best = Some(([x.clone(), y.clone()], at, allowed_m));
                 }
             }

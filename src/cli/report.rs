@@ -170,7 +170,10 @@ impl Reporter<'_> {
             ),
         };
         let gives = match self.outcome.report.other_reading_diameter_m {
-            Some(m) => format!("they would give {}", self.length(m, decimals, Rounding::Down)),
+            Some(m) => format!(
+                "they would give {}",
+                self.length(m, decimals, Rounding::Down)
+            ),
             None => "they would leave no room".to_owned(),
         };
         format!("  Yards are read {this}. {other}, {gives}.\n")
@@ -183,11 +186,19 @@ impl Reporter<'_> {
         let mut order: Vec<usize> = (0..printed.limits.len()).collect();
         let spare_m = |i: &usize| printed.limits.get(*i).map_or(f64::INFINITY, |l| l.spare_m);
         order.sort_by(|a, b| spare_m(a).total_cmp(&spare_m(b)));
-        let heading = ["Limits, tightest first", "required", "clearance", "spare", "relief gain", ""];
+        let heading = [
+            "Limits, tightest first",
+            "required",
+            "clearance",
+            "spare",
+            "relief gain",
+            "",
+        ];
         let units = ["", unit, unit, unit, &format!("{unit} per {unit}"), ""];
         let mut rows = vec![heading.map(str::to_owned), units.map(str::to_owned)];
         for &i in order.iter().take(SHOWN_LIMITS) {
-            let (Some(limit), Some(line)) = (self.outcome.limits.limits.get(i), printed.limits.get(i))
+            let (Some(limit), Some(line)) =
+                (self.outcome.limits.limits.get(i), printed.limits.get(i))
             else {
                 continue;
             };
@@ -246,7 +257,9 @@ impl Reporter<'_> {
     }
 
     fn not_checked(&self) -> String {
-        let mut text = "Not checked: access, slopes, ground, and how well the lines were surveyed.\n".to_owned();
+        let mut text =
+            "Not checked: access, slopes, ground, and how well the lines were surveyed.\n"
+                .to_owned();
         if matches!(self.outcome.plane(), Plane::LonLat { .. }) {
             text += "Distances are those on the WGS84 ellipsoid; on ground 1,000 m above it they are longer by 1 part in 6,400.\n";
         }

@@ -91,7 +91,9 @@ fn finish(lots: &Path, end: Result<Tally, SweepError>, writer: Writer) -> Result
     let tally = match end {
         Ok(tally) => tally,
         // Whoever read has had enough.
-        Err(SweepError::Write(e)) if e.kind() == io::ErrorKind::BrokenPipe => return Ok(Exit::Done),
+        Err(SweepError::Write(e)) if e.kind() == io::ErrorKind::BrokenPipe => {
+            return Ok(Exit::Done);
+        }
         Err(SweepError::Write(e)) => return Err(Failure::writing("a row", e)),
         Err(e) => return Err(Failure::other(&e.into())),
     };
@@ -140,13 +142,19 @@ impl Writer {
             .collect();
         let mut files = files::create_apart(&options.lots, &asked)?.into_iter();
         let buffered = |out| BufWriter::with_capacity(WRITE_BYTES, out);
-        let mut next = || files.next().map(|file| buffered(Box::new(file) as Box<dyn Write>));
+        let mut next = || {
+            files
+                .next()
+                .map(|file| buffered(Box::new(file) as Box<dyn Write>))
+        };
         let to_file = options.json_lines.as_ref().and_then(|_| next());
         let csv = options.csv.as_ref().and_then(|_| next()).map(CsvRows::new);
         let to_stdout = || asked.is_empty().then(|| buffered(Box::new(io::stdout())));
         Ok(Writer {
             json_lines: to_file.or_else(to_stdout).map(JsonLines::new),
-            csv: csv.transpose().map_err(|e| Failure::writing("the heading", e))?,
+            csv: csv
+                .transpose()
+                .map_err(|e| Failure::writing("the heading", e))?,
         })
     }
 

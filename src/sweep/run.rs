@@ -145,8 +145,12 @@ fn place(
     placed: &SyncSender<(Vec<Row>, Batch)>,
 ) {
     for batch in to_place {
-        let handfuls: Vec<Vec<Row>> =
-            pool.install(|| batch.par_chunks(HANDFUL).map(|h| place_all(h, plan)).collect());
+        let handfuls: Vec<Vec<Row>> = pool.install(|| {
+            batch
+                .par_chunks(HANDFUL)
+                .map(|h| place_all(h, plan))
+                .collect()
+        });
         let full = handfuls
             .iter()
             .zip(batch.chunks(HANDFUL))

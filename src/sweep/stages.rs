@@ -166,12 +166,7 @@ fn lot_of(area: Area, setback_m: f64) -> Result<Lot, SiteError> {
     Lot::new(area, boundary)
 }
 
-fn row(
-    lot: &Ready,
-    placement: &Placement,
-    snapped: Option<Snapped>,
-    solve_us: f64,
-) -> Option<Row> {
+fn row(lot: &Ready, placement: &Placement, snapped: Option<Snapped>, solve_us: f64) -> Option<Row> {
     let status = match placement.status {
         Status::Fits => status::FITS,
         Status::NoRoom => status::NO_ROOM,
