@@ -27,3 +27,9 @@ pub mod placement;
 
 /// Bytes in, bytes out: sites and lots in GeoJSON, WKT and CSV, the site plane, rows of a sweep.
 pub mod io;
+
+/// One structure placed on every lot of a file: streamed, on all cores, with memory flat in the number of lots.
+pub mod sweep;
+
+/// The command line: options, files, reports, exit codes. Nothing else opens a file.
+pub mod cli;

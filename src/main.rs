@@ -1,1 +1,7 @@
-fn main() {}
+//! The program `roundstead`: its command line.
+
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    roundstead::cli::run(std::env::args_os())
+}

@@ -1,0 +1,296 @@
+//! The stages of a handful of lots: parse all, validate all, place all.
+//!
+//! A stage that fails, or panics, makes a row of the lot; later stages pass it over. So one lot never stops the others.
+
+use std::any::Any;
+use std::cell::Cell;
+use std::fmt::Write;
+use std::panic::{AssertUnwindSafe, catch_unwind};
+use std::sync::atomic::Ordering;
+use std::time::Instant;
+
+use serde_json::Value;
+
+use super::{Plan, status};
+use crate::geom::validate::{Problem, validate};
+use crate::geom::{Area, Point};
+use crate::io::lots::{LotProblem, LotRecord, LotText};
+use crate::io::plane::{Plane, Snapped};
+use crate::io::rows::Row;
+use crate::limits::Limits;
+use crate::placement::{Effort, PlaceError, Placement, Status, largest};
+use crate::site::lot::Boundary;
+use crate::site::{Lot, Role, Site, SiteError};
+
+/// As many problems of one lot are said in its row; `place` says them all.
+const SHOWN_PROBLEMS: usize = 5;
+
+/// A lot that is still on its way.
+struct Ready {
+    id: Value,
+    plane: Plane,
+    area: Area,
+}
+
+/// What a stage makes of a lot: something for the next stage, or its row.
+type Staged<T> = Result<T, Row>;
+
+/// Places on all lots of a handful; one row for each, in order. When cancelled, rows end at the first lot not placed.
+pub fn place_all(lots: &[Result<LotText, LotProblem>], plan: &Plan) -> Vec<Row> {
+    let parsed: Vec<Staged<LotRecord>> = lots.iter().map(parsed).collect();
+    let ready: Vec<Staged<Ready>> = parsed
+        .into_iter()
+        .map(|lot| lot.and_then(|record| validated(record, plan)))
+        .collect();
+    let mut rows = Vec::with_capacity(ready.len());
+    for lot in ready {
+        match lot {
+            Err(row) => rows.push(row),
+            Ok(_) if plan.cancel.load(Ordering::Relaxed) => break,
+            Ok(lot) => match placed(&lot, plan) {
+                Some(row) => rows.push(row),
+                None => break,
+            },
+        }
+    }
+    rows
+}
+
+fn bad(id: &Value, problem: String) -> Row {
+    Row::bad(id.clone(), status::INVALID_LOT, problem)
+}
+
+fn failed(id: &Value, problem: String) -> Row {
+    Row::bad(id.clone(), status::FAILED, problem)
+}
+
+/// Runs `work` on one lot; a panic in it becomes that lot's row.
+fn guarded<T>(id: impl Fn() -> Value, work: impl FnOnce() -> T) -> Staged<T> {
+    catch_unwind(AssertUnwindSafe(work)).map_err(|panic| {
+        let said = said_in(panic.as_ref());
+        failed(&id(), format!("the program failed on this lot: {said}"))
+    })
+}
+
+fn said_in(panic: &(dyn Any + Send)) -> &str {
+    let text = panic.downcast_ref::<&str>().copied();
+    text.or_else(|| panic.downcast_ref::<String>().map(String::as_str))
+        .unwrap_or("no reason was given")
+}
+
+fn parsed(lot: &Result<LotText, LotProblem>) -> Staged<LotRecord> {
+    let text = match lot {
+        Ok(text) => text,
+        Err(problem) => return Err(bad(&problem.id, problem.to_string())),
+    };
+    let record = guarded(|| text.position.into(), || text.parse())?;
+    record.map_err(|problem| bad(&problem.id, problem.to_string()))
+}
+
+fn validated(record: LotRecord, plan: &Plan) -> Staged<Ready> {
+    let LotRecord { id, polygons, .. } = record;
+    let ready = guarded(
+        || id.clone(),
+        || {
+            let plane = Plane::around(&polygons, plan.coordinates).map_err(|e| e.to_string())?;
+            let in_site = plane
+                .to_site_polygons(&polygons)
+                .map_err(|e| e.to_string())?;
+            let valid = validate(&in_site, &|_, _| true).map_err(|p| sentences(&p, &plane))?;
+            Ok((plane, valid.area))
+        },
+    )?;
+    match ready {
+        Ok((plane, area)) => Ok(Ready { id, plane, area }),
+        Err(problem) => Err(bad(&id, problem)),
+    }
+}
+
+fn sentences(problems: &[Problem], plane: &Plane) -> String {
+    let shown = problems.iter().take(SHOWN_PROBLEMS);
+    let mut text = shown.map(|p| plane.say(p)).collect::<Vec<_>>().join(" ");
+    if let Some(more @ 1..) = problems.len().checked_sub(SHOWN_PROBLEMS) {
+        // Writing to a text cannot fail.
+        let _ = write!(text, " And {more} more.");
+    }
+    text
+}
+
+/// The row of a valid lot; `None` when the sweep was cancelled meanwhile.
+fn placed(lot: &Ready, plan: &Plan) -> Option<Row> {
+    let snapped: Cell<Option<Snapped>> = Cell::new(None);
+    let snap = |p: Point| {
+        let s = lot.plane.snap(p);
+        snapped.set(Some(s));
+        s.site
+    };
+    let area = lot.area.clone();
+    let begun = Instant::now();
+    let placement = guarded(|| lot.id.clone(), || largest_on(area, plan, &snap));
+    let solve_us = begun.elapsed().as_nanos() as f64 / 1000.0;
+    match placement {
+        Err(row) => Some(row),
+        Ok(Err(e)) => Some(failed(&lot.id, e.to_string())),
+        Ok(Ok(placement)) => row(lot, &placement, snapped.get(), solve_us),
+    }
+}
+
+/// From the validated area to the verified placement: what `solve_us` measures.
+fn largest_on(
+    area: Area,
+    plan: &Plan,
+    snap: &dyn Fn(Point) -> Point,
+) -> Result<Placement, PlaceError> {
+    let site = Site {
+        reading: plan.reading,
+        ..Site::of_lot(lot_of(area, plan.setback_m)?)
+    };
+    let limits = Limits::new(&site)?;
+    let effort = Effort {
+        max_pieces: plan.max_pieces,
+        cancel: Some(plan.cancel),
+        ..Effort::default()
+    };
+    largest(&limits, &site, effort, snap)
+}
+
+fn lot_of(area: Area, setback_m: f64) -> Result<Lot, SiteError> {
+    if setback_m == 0.0 {
+        return Ok(Lot::plain(area));
+    }
+    let boundary = Boundary {
+        role: Role::Other,
+        setback_m,
+    };
+    let boundary = vec![boundary; area.n_segments()];
+    Lot::new(area, boundary)
+}
+
+fn row(lot: &Ready, placement: &Placement, snapped: Option<Snapped>, solve_us: f64) -> Option<Row> {
+    let status = match placement.status {
+        Status::Fits => status::FITS,
+        Status::NoRoom => status::NO_ROOM,
+        Status::CapHit => status::CAP_HIT,
+        Status::Cancelled => return None,
+    };
+    let centre = placement.circle.map(|circle| match snapped {
+        // What was snapped last is what was verified; its input coordinates give it back to the bit.
+        Some(s) if s.site == circle.centre => s.input,
+        _ => lot.plane.from_site(circle.centre),
+    });
+    Some(Row {
+        id: lot.id.clone(),
+        status,
+        diameter_m: placement.circle.map(|circle| circle.diameter_m),
+        upper_m: Some(placement.upper_m),
+        centre: centre.map(|p| [p.x, p.y]),
+        solve_us: Some(solve_us),
+        problem: None,
+    })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::io::lots::Lots;
+    use crate::io::plane::Coordinates;
+    use crate::site::YardReading;
+    use crate::units::LengthUnit;
+    use std::sync::atomic::AtomicBool;
+
+    fn plan(cancel: &AtomicBool) -> Plan<'_> {
+        Plan {
+            coordinates: Coordinates::Plane(LengthUnit::Metre),
+            reading: YardReading::Parallel,
+            setback_m: 0.0,
+            max_pieces: super::super::MAX_PIECES,
+            cancel,
+        }
+    }
+
+    fn rows(table: &str, plan: &Plan) -> Vec<Row> {
+        let lots: Vec<_> = Lots::open(table.as_bytes(), "lots")
+            .expect("a table")
+            .collect();
+        place_all(&lots, plan)
+    }
+
+    const TABLE: &str = "id;wkt\n\
+        square;POLYGON((0 0,10 0,10 10,0 10,0 0))\n\
+        bow;POLYGON((0 0,10 10,10 0,0 10,0 0))\n\
+        text;nothing\n\
+        ell;POLYGON((0 0,20 0,20 10,10 10,10 20,0 20,0 0))\n";
+
+    #[test]
+    fn every_lot_has_a_row_in_order() {
+        let cancel = AtomicBool::new(false);
+        let rows = rows(TABLE, &plan(&cancel));
+        let brief: Vec<_> = rows.iter().map(|r| (r.id.as_str(), r.status)).collect();
+        assert_eq!(
+            brief,
+            [
+                (Some("square"), status::FITS),
+                (Some("bow"), status::INVALID_LOT),
+                (Some("text"), status::INVALID_LOT),
+                (Some("ell"), status::FITS),
+            ]
+        );
+        let problem = |i: usize| rows[i].problem.clone().unwrap_or_default();
+        assert!(
+            problem(1).contains("crosses itself at (5.000, 5.000)"),
+            "{}",
+            problem(1)
+        );
+        assert!(problem(2).starts_with("row 3: "), "{}", problem(2));
+        assert_eq!(rows[0].centre, Some([5.0, 5.0]));
+        // Circle into the corner of an L of two squares of side 10: 2 × 10 × (2 - √2).
+        let diameter_m = rows[3].diameter_m.expect("a circle");
+        assert!((diameter_m - 20.0 * (2.0 - 2f64.sqrt())).abs() < 1e-8);
+    }
+
+    #[test]
+    fn setbacks_apply_to_every_lot_line() {
+        let cancel = AtomicBool::new(false);
+        let plan = Plan {
+            setback_m: 2.0,
+            ..plan(&cancel)
+        };
+        let rows = rows(TABLE, &plan);
+        let diameter_m = rows[0].diameter_m.expect("a circle");
+        assert!((diameter_m - 6.0).abs() < 1e-9, "{diameter_m}");
+        let wide = Plan {
+            setback_m: 6.0,
+            ..plan
+        };
+        let rows = self::rows(TABLE, &wide);
+        assert_eq!((rows[0].status, rows[0].diameter_m), ("no-room", None));
+    }
+
+    #[test]
+    fn a_cap_is_reported_with_what_was_found() {
+        let cancel = AtomicBool::new(false);
+        let plan = Plan {
+            max_pieces: 1,
+            ..plan(&cancel)
+        };
+        let row = &rows(TABLE, &plan)[3];
+        assert_eq!(row.status, status::CAP_HIT);
+        assert!(row.upper_m > row.diameter_m);
+    }
+
+    #[test]
+    fn a_cancelled_sweep_ends_at_the_first_lot_not_placed() {
+        let cancel = AtomicBool::new(true);
+        assert_eq!(rows(TABLE, &plan(&cancel)).len(), 0);
+    }
+
+    #[test]
+    fn a_panic_is_the_row_of_its_lot() {
+        let row = guarded(|| "a".into(), || -> () { panic!("no {}", "luck") });
+        let problem = row.expect_err("a row").problem;
+        assert_eq!(
+            problem.as_deref(),
+            Some("the program failed on this lot: no luck")
+        );
+    }
+}
