@@ -17,6 +17,12 @@ pub trait Summary: Copy {
     fn join(self, other: Self) -> Self;
 }
 
+/// Nothing beside the box.
+impl Summary for () {
+    const NONE: () = ();
+    fn join(self, (): ()) {}
+}
+
 /// A box and a summary of everything below.
 #[derive(Clone, Copy, Debug)]
 pub struct Node<S> {
@@ -174,11 +180,6 @@ pub fn ray_meets(bounds: &Bounds, p: Point) -> bool {
 mod tests {
     use super::*;
     use crate::geom::Segment;
-
-    impl Summary for () {
-        const NONE: () = ();
-        fn join(self, (): ()) {}
-    }
 
     /// A closed zigzag ring of n segments.
     fn zigzag(n: usize) -> Vec<Segment> {

@@ -4,7 +4,7 @@
 //! three-column game of those values bounds the radius. The rows that matter are found by column generation: the row that
 //! allows least at the game's present point comes in next.
 
-use super::index::{Least, RowIndex, game_entry, game_weight};
+use super::index::{Least, RowIndex};
 use crate::geom::Point;
 use crate::lp::game::{Game, GameRow, Value};
 
@@ -43,7 +43,7 @@ impl Handed {
     /// One row at the corners of a triangle, for a root.
     pub fn one(index: &RowIndex, row: u32, corners: &Triangle) -> Handed {
         let mut handed = Handed::default();
-        handed.push(row, corners.map(|c| game_entry(index.row(row), c)));
+        handed.push(row, corners.map(|c| index.entry(row, c)));
         handed
     }
 
@@ -65,7 +65,7 @@ impl Handed {
         let mut halves = [Handed::default(); 2];
         for (&row, v) in self.rows().iter().zip(&self.at_corners) {
             let (a, b, c) = (v[k], v[(k + 1) % 3], v[(k + 2) % 3]);
-            let at_m = game_entry(index.row(row), m);
+            let at_m = index.entry(row, m);
             halves[0].push(row, [a, at_m, c]);
             halves[1].push(row, [at_m, b, c]);
         }
@@ -100,7 +100,7 @@ pub(super) fn look(
 ) -> Looked {
     let game_row = |tag: u32, d: [f64; 3]| GameRow {
         d,
-        w: game_weight(index.row(tag)),
+        w: index.weight(tag),
         tag,
     };
     game.start(game_row(handed.rows[0], handed.at_corners[0]));
@@ -117,7 +117,7 @@ pub(super) fn look(
         if value.bound > enough {
             least = index.least(point, game.rows().iter().map(|row| row.tag));
             if !game.has(least.row) {
-                let d = corners.map(|c| game_entry(index.row(least.row), c));
+                let d = corners.map(|c| index.entry(least.row, c));
                 if d.iter().all(|v| v.is_finite()) && game.push(game_row(least.row, d)) {
                     continue;
                 }
