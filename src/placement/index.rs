@@ -4,9 +4,10 @@
 //! one by one. The tree also answers, over the boundary's segments, whether a place is in the region.
 
 use std::borrow::Cow;
+use std::ops::Range;
 
 use crate::geom::tree::{Node, RunTree, Summary, ray_meets};
-use crate::geom::{Bounds, Point, predicates};
+use crate::geom::{Bounds, Point, Segment, predicates};
 use crate::limits::{Limits, LotRows, Row};
 
 /// The extremes of w and s over rows: a bound on what any of them allows at a distance.
@@ -154,7 +155,17 @@ impl<'a> RowIndex<'a> {
             }
         };
         likely.for_each(|i| visit(i as usize, &mut best2));
-        tree.nearest(&mut best2, |node| node.bounds.distance2(c), visit);
+        tree.nearest(
+            &mut best2,
+            |node| node.bounds.distance2(c),
+            |run, best2| {
+                if let Some((distance2, i)) = Segment::nearest_of(&boundary[run.clone()], c)
+                    && distance2 < *best2
+                {
+                    (*best2, found) = (distance2, run.start + i);
+                }
+            },
+        );
         Least {
             row: found as u32,
             radius: best2.sqrt(),
@@ -190,7 +201,9 @@ impl<'a> RowIndex<'a> {
                 f64::INFINITY.copysign(beyond)
             }
         };
-        tree.nearest(&mut best, lower, |i, best| visit(i + self.n_scanned, best));
+        tree.nearest(&mut best, lower, |run, best| {
+            run.for_each(|i| visit(i + self.n_scanned, best))
+        });
         Least {
             row: found as u32,
             radius: best,
@@ -224,8 +237,8 @@ impl<'a> RowIndex<'a> {
         boundary[..self.n_scanned]
             .iter()
             .for_each(|s| best = best.min(s.distance(p)));
-        let visit = |i: usize, best: &mut f64| {
-            if let Some(s) = boundary.get(i + self.n_scanned) {
+        let visit = |run: Range<usize>, best: &mut f64| {
+            for s in run.filter_map(|i| boundary.get(i + self.n_scanned)) {
                 *best = best.min(s.distance(p));
             }
         };

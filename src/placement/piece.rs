@@ -40,10 +40,16 @@ pub(super) struct Handed {
 }
 
 impl Handed {
-    /// One row at the corners of a triangle, for a root.
-    pub fn one(index: &RowIndex, row: u32, corners: &Triangle) -> Handed {
+    /// Rows at the corners of a triangle, for a root; the first has positive weight.
+    pub fn new(
+        index: &RowIndex,
+        rows: impl IntoIterator<Item = u32>,
+        corners: &Triangle,
+    ) -> Handed {
         let mut handed = Handed::default();
-        handed.push(row, corners.map(|c| index.entry(row, c)));
+        for row in rows {
+            handed.push(row, corners.map(|c| index.entry(row, c)));
+        }
         handed
     }
 
@@ -98,6 +104,19 @@ pub(super) fn look(
     handed: &Handed,
     enough: f64,
 ) -> Looked {
+    if let Some((bound, weights)) = single_row_bound(index, handed, enough) {
+        let least = Least {
+            row: handed.rows[0],
+            radius: f64::NEG_INFINITY,
+        };
+        return Looked {
+            bound,
+            weights,
+            handed: *handed,
+            point: corners[0],
+            least,
+        };
+    }
     let game_row = |tag: u32, d: [f64; 3]| GameRow {
         d,
         w: index.weight(tag),
@@ -131,6 +150,22 @@ pub(super) fn look(
             least,
         };
     }
+}
+
+/// The bound of one row alone, where it is enough: half the pieces dropped need no more.
+fn single_row_bound(
+    index: &RowIndex,
+    handed: &Handed,
+    enough: f64,
+) -> Option<(f64, [Weighted; 3])> {
+    for (&row, d) in handed.rows().iter().zip(&handed.at_corners) {
+        let w = index.weight(row);
+        let greatest = d[0].max(d[1]).max(d[2]);
+        if w > 0.0 && greatest <= enough * w {
+            return Some((greatest / w, [(row, 1.0 / w), (row, 0.0), (row, 0.0)]));
+        }
+    }
+    None
 }
 
 /// The rows a half starts with: those that carry the bound, a weighty one first, then the newest others.

@@ -207,12 +207,18 @@ impl<'a> Search<'a> {
                 self.note(i, Leaf::NearCorners);
                 continue;
             }
-            let seed = self.weighty_row(centroid(&t));
-            let handed = Handed::one(self.index, seed, &t);
+            let seeds = roots
+                .seeds
+                .get(i as usize)
+                .copied()
+                .filter(|seeds| self.index.weight(seeds[0]) > 0.0);
+            let seeds = seeds.unwrap_or_else(|| [self.weighty_row(centroid(&t)); 3]);
+            let handed = Handed::new(self.index, seeds, &t);
+            let weights = seeds.map(|row| (row, 0.0));
             self.take(Piece {
                 corners: t,
                 bound: f64::INFINITY,
-                weights: [(seed, 0.0); 3],
+                weights,
                 handed,
                 depth: 0,
                 node: i,
