@@ -40,8 +40,8 @@ impl Row {
         }
     }
 
-    /// The greatest radius that a distance allows: plus infinity where the row allows any, minus infinity where it allows
-    /// none.
+    /// The greatest radius that a distance allows: plus infinity where the row allows any, negative where it allows none; a
+    /// row without weight is the more negative the more is missing.
     pub fn radius_at(&self, distance: f64) -> f64 {
         let own = linear(distance, self.w, self.s);
         match &self.otherwise {
@@ -85,6 +85,10 @@ impl Row {
     }
 }
 
+/// Metres missing on a row without weight that count as one metre of radius missing: small, so that such a row, once broken,
+/// comes before any other.
+const MISSING_M: f64 = 1e-9;
+
 fn linear(distance: f64, w: f64, s: f64) -> f64 {
     let beyond = distance - s;
     if w > 0.0 {
@@ -92,7 +96,7 @@ fn linear(distance: f64, w: f64, s: f64) -> f64 {
     } else if beyond >= 0.0 {
         f64::INFINITY
     } else {
-        f64::NEG_INFINITY
+        beyond / MISSING_M
     }
 }
 
@@ -123,7 +127,7 @@ mod tests {
     #[test]
     fn an_exclusion_allows_all_or_nothing() {
         check(&row(0.0, 5.0, None), 5.0, f64::INFINITY, 0.0);
-        check(&row(0.0, 5.0, None), 4.9, f64::NEG_INFINITY, 0.0);
+        check(&row(0.0, 5.0, None), 4.0, -1.0 / MISSING_M, 0.0);
     }
 
     #[test]

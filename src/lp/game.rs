@@ -83,6 +83,8 @@ pub struct Game {
     basis: [usize; 3],
     weights: [f64; 3],
     scale: f64,
+    /// A row without weight that no point of the simplex keeps.
+    unkept: Option<usize>,
 }
 
 /// The optimum of a game as it stands.
@@ -116,6 +118,7 @@ impl Game {
             basis: [0, 1, 2],
             weights: [0.0; 3],
             scale: 0.0,
+            unkept: None,
         }
     }
 
@@ -131,6 +134,7 @@ impl Game {
         self.basis = [3, others[0], others[1]];
         self.weights = [1.0, d[best] - d[others[0]], d[best] - d[others[1]]].map(|y| y / first.w);
         self.scale = size(d);
+        self.unkept = None;
     }
 
     pub fn rows(&self) -> &[GameRow] {
@@ -153,8 +157,11 @@ impl Game {
         }
         self.rows[self.n_rows] = row;
         self.constraints[3 + self.n_rows] = Constraint::of(row);
-        self.n_rows += 1;
         self.scale = self.scale.max(size(row.d));
+        if row.w == 0.0 && row.d.iter().all(|&d| d < -SHOWN * self.scale) {
+            self.unkept = Some(self.n_rows);
+        }
+        self.n_rows += 1;
         true
     }
 
@@ -175,6 +182,14 @@ impl Game {
     /// assert!((game.solve().bound - 4.0 / 3.0).abs() < 1e-12);
     /// ```
     pub fn solve(&mut self) -> Value {
+        if let Some(row) = self.unkept {
+            let weights = self.tagged([(row, 1.0), (0, 0.0), (0, 0.0)]);
+            return Value {
+                bound: f64::NEG_INFINITY,
+                point: [1.0 / 3.0; 3],
+                weights,
+            };
+        }
         for _ in 0..MAX_PIVOTS {
             let inverse = self.inverse();
             let point = self.primal(&inverse);
@@ -225,16 +240,16 @@ impl Game {
         let size = parts[0].abs().max(parts[1].abs()).max(parts[2].abs());
         let mut leaving = None;
         let mut step = f64::INFINITY;
-        for m in 0..3 {
-            if parts[m] > PIVOT * size && self.weights[m] / parts[m] < step {
-                (step, leaving) = (self.weights[m] / parts[m], Some(m));
+        for (m, (weight, part)) in self.weights.iter().zip(parts).enumerate() {
+            if part > PIVOT * size && weight / part < step {
+                (step, leaving) = (weight / part, Some(m));
             }
         }
         let Some(leaving) = leaving else {
             return Pivot::NoPointLeft(parts.map(|part| (-part).max(0.0)));
         };
-        for m in 0..3 {
-            self.weights[m] = (self.weights[m] - step * parts[m]).max(0.0);
+        for (weight, part) in self.weights.iter_mut().zip(parts) {
+            *weight = (*weight - step * part).max(0.0);
         }
         self.basis[leaving] = entering;
         self.weights[leaving] = step;

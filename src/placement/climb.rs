@@ -15,6 +15,10 @@ const MAX_ROUNDS: usize = 12;
 /// A step is the last when it gains less than this, relative to the radius: ten times the rounding of a distance.
 const LAST_GAIN: f64 = 1e-15 * 10.0;
 
+/// What a step leaves between itself and the edge of a row without weight, m: such a row is kept or broken, and rounding
+/// would break it. Far below the gap of 1e-9 m.
+const MARGIN_M: f64 = 1e-11;
+
 /// First reach of a step, in radii; long enough to cross a room, short enough that most steps stay in it.
 const FIRST_REACH: f64 = 4.0;
 
@@ -46,9 +50,9 @@ impl SettledDisc {
     }
 }
 
-/// Climbs from `start`, which lies in the region and allows `radius` > 0.
+/// Climbs from `start`, which lies in the region; `size` is a radius that steps are measured by.
 ///
-/// What comes back: a centre that allows at least as much, with the rows whose tangents carry the last step.
+/// What comes back: a centre that allows at least as much as the start, with the rows whose tangents carry the last step.
 /// Method: successive linear programs with tangents, rows found by the index; a step that leaves the region is taken again
 /// with a reach that cannot.
 /// Tolerance: ends when a step gains less than 1e-14 of the radius, or after 12 rounds.
@@ -56,9 +60,10 @@ pub(super) fn climb(
     index: &RowIndex,
     game: &mut Game,
     start: Point,
-    radius: f64,
+    size: f64,
     rows: &[u32],
 ) -> Spot {
+    let radius = index.least(start, rows.iter().copied()).radius;
     let mut spot = Spot {
         centre: start,
         radius,
@@ -66,10 +71,14 @@ pub(super) fn climb(
     };
     let mut reach = FIRST_REACH;
     for _ in 0..MAX_ROUNDS {
-        let step = step(index, game, &spot, rows, reach * spot.radius);
+        let scale = if spot.radius > 0.0 { spot.radius } else { size };
+        let step = step(index, game, &spot, rows, reach * scale);
         let gain = step.radius - spot.radius;
         let is_far = step.centre.distance(spot.centre) >= spot.radius;
-        if reach > SAFE_REACH && is_far && !index.is_in_region(step.centre) {
+        if is_far && !index.is_in_region(step.centre) {
+            if reach == SAFE_REACH {
+                break;
+            }
             reach = SAFE_REACH;
             continue;
         }
@@ -137,6 +146,7 @@ fn tangent(index: &RowIndex, tag: u32, centre: Point, domain: &[Vec2; 3]) -> Opt
     let row = index.row(tag);
     let nearest = row.feature.nearest(centre);
     let (value, slope) = match row.otherwise {
+        None if row.w == 0.0 => (nearest.distance - row.s - MARGIN_M, 1.0),
         None => (nearest.distance - row.s, 1.0),
         Some(_) => (
             row.radius_at(nearest.distance),

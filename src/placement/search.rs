@@ -72,6 +72,9 @@ const NEAR_TIE: f64 = 0.98;
 /// Near ties that are climbed to at the most: discs are looked through one by one.
 const MAX_CLIMBED: usize = 64;
 
+/// What the point of a linear program may miss a row without weight by, m; climbing mends it.
+const ROUNDED_OFF_M: f64 = 1e-9;
+
 /// Units in the last place that a bound may be off by: a distance takes about ten operations.
 const UNITS_A_BOUND: u16 = 16;
 
@@ -237,7 +240,8 @@ impl<'a> Search<'a> {
             &piece.handed,
             enough,
         );
-        let is_outside = looked.least.radius > self.best_radius() && !self.offer(&looked);
+        let is_worth_it = looked.least.radius > self.best_radius() || self.is_nearly_kept(&looked);
+        let is_outside = is_worth_it && !self.offer(&looked);
         if looked.bound < piece.bound {
             (piece.bound, piece.weights) = (looked.bound, looked.weights);
         }
@@ -319,9 +323,18 @@ impl<'a> Search<'a> {
             return false;
         }
         let spot = self.climb_from(looked);
-        self.best = Some(spot);
+        if spot.radius > self.best_radius() {
+            self.best = Some(spot);
+        }
         self.settle(&spot);
         true
+    }
+
+    /// Whether a piece's point breaks a row without weight by rounding alone, as the optimum on such a row's edge does.
+    fn is_nearly_kept(&self, looked: &Looked) -> bool {
+        let row = self.index.row(looked.least.row);
+        let is_edge = looked.bound > self.enough() && row.w == 0.0 && looked.least.radius < 0.0;
+        is_edge && row.feature.distance(looked.point) > row.s - ROUNDED_OFF_M
     }
 
     /// Whether a piece's point lies in the region; pieces of the lot's own triangles do.
@@ -343,7 +356,7 @@ impl<'a> Search<'a> {
             self.index,
             &mut self.game,
             looked.point,
-            radius,
+            looked.bound,
             looked.handed.rows(),
         )
     }

@@ -137,7 +137,7 @@ impl<'a> Rows<'a> {
             return Err(format!("row {i} has no weight"));
         }
         let (away, distance) = self
-            .from_nearest(i, row, c)
+            .nearest_of(i, row, c)
             .ok_or_else(|| format!("row {i} touches the centre"))?;
         let radius = match row.otherwise.as_deref() {
             None => {
@@ -160,7 +160,7 @@ impl<'a> Rows<'a> {
     }
 
     /// Direction and distance from a point of the feature that is nearest up to rounding.
-    fn from_nearest(&self, i: u32, row: &Row, c: Point) -> Option<(Vector, Interval)> {
+    fn nearest_of(&self, i: u32, row: &Row, c: Point) -> Option<(Vector, Interval)> {
         let from = match &row.feature {
             Feature::HalfPlane { .. } => {
                 let s = self.limits.region.boundary()[i as usize];
