@@ -19,7 +19,7 @@ fn a_lot_moved_and_turned_keeps_its_diameter() {
         let n = 4 + seeded.below(30);
         let lot = area(&[star(&mut seeded, n, 20.0, 80.0)]);
         let by = Vec2::new(seeded.between(-500.0, 500.0), seeded.between(-500.0, 500.0));
-        let elsewhere = moved(&lot, seeded.between(0.0, 6.28), by);
+        let elsewhere = moved(&lot, seeded.between(0.0, std::f64::consts::TAU), by);
         let setback = seeded.between(0.0, 6.0);
         for reading in [YardReading::Parallel, YardReading::Rounded] {
             let there = |area: &roundstead::geom::Area| {
