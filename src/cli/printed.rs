@@ -1,7 +1,7 @@
 //! The placement as it is printed: rounded, and still true.
 //!
-//! The centre is rounded first. The diameter is then what plain geometry allows there, rounded down, and stepped down in its
-//! last digit until every printed clearance is at least its printed required distance, where required rounds up, clearance
+//! The centre is rounded first. The diameter is then what plain geometry allows there, which is at most what was found and
+//! the gap it was found to, rounded down, and stepped down in its last digit until every printed clearance is at least its printed required distance, where required rounds up, clearance
 //! and spare down. Where the usual decimals do not allow that (a lot of millimetres, a fall zone touched to the last bit)
 //! more are printed.
 
@@ -20,6 +20,10 @@ const LEAST_UNITS: f64 = 100.0;
 /// (1e-8 degrees of latitude are 1.1 mm).
 const PLANE_EXTRA: usize = 1;
 const DEGREES_EXTRA: usize = 6;
+/// Lengths are known to this, m: it is the gap of the proof. What lies so near to a printable figure is that figure, so
+/// that a lot of 20 ft with setbacks of 1 ft has 18.00 ft and not 17.99, though f64 has no 0.3048. Ten times as much could
+/// be seen in nine decimals.
+const KNOWN_TO_M: f64 = 1e-9;
 /// Steps down before more decimals are tried. A rounded figure in each of two columns costs two or three.
 const MAX_STEPS: i32 = 30;
 
@@ -46,7 +50,7 @@ pub struct PrintedLimit {
 /// A limit's distances at a centre, which no diameter changes, m.
 struct Distances {
     to_thing_m: f64,
-    /// By the rows: to the yard, in the parallel reading.
+    /// By the rows, which ask for no share of the diameter where this is used: to the yard, in the parallel reading.
     to_rows_m: f64,
     is_drawn_yard: bool,
 }
@@ -73,11 +77,11 @@ impl Printer<'_> {
     fn with_decimals(&self, centre: Point, diameter_m: f64, decimals: usize) -> Option<Printed> {
         let (texts, at, allowed_m) = self.rounded_centre(centre, decimals)?;
         let distances = self.distances(at);
-        let from_m = self.unit.from_m(diameter_m.min(allowed_m));
+        let from_m = self.unit.from_m(allowed_m.min(diameter_m + KNOWN_TO_M));
         let step = 10f64.powi(-(decimals as i32));
         (0..MAX_STEPS).find_map(|k| {
             let lowered_m = self.unit.to_m(from_m - f64::from(k) * step);
-            let diameter = self.unit.format(lowered_m, decimals, Rounding::Down);
+            let diameter = self.down(lowered_m, decimals);
             let diameter_m = self.unit.to_m(diameter.parse().ok()?);
             let rows = self.limits.limits.iter().zip(&distances);
             let limits = rows.map(|(limit, d)| self.limit(limit, d, diameter_m, decimals));
@@ -133,7 +137,7 @@ impl Printer<'_> {
         let mut to_rows_m = vec![f64::INFINITY; self.limits.limits.len()];
         for row in self.limits.rows() {
             if let Some(least) = to_rows_m.get_mut(row.limit as usize) {
-                *least = least.min(row.feature.distance(at));
+                *least = least.min(row.feature.distance(at) - row.s);
             }
         }
         let is_parallel = self.site.reading == YardReading::Parallel;
@@ -165,23 +169,28 @@ impl Printer<'_> {
         } else {
             clearance_m - required_m
         };
-        let printed = |m: f64, rounding| {
-            let text = self.unit.format(m, decimals, rounding);
-            let figure: Option<f64> = text.parse().ok();
-            Some((text, figure?))
-        };
-        let (required, required_figure) = printed(required_m, Rounding::Up)?;
-        let (clearance, clearance_figure) = printed(clearance_m, Rounding::Down)?;
-        let (spare, spare_figure) = printed(spare_m, Rounding::Down)?;
+        let required = self
+            .unit
+            .format(required_m - KNOWN_TO_M, decimals, Rounding::Up);
+        let clearance = self.down(clearance_m, decimals);
+        let spare = self.down(spare_m, decimals);
+        let figure = |text: &str| text.parse::<f64>().ok();
         // A yard by parallels may end before the lot line does; then the distance to the line itself says nothing.
         let says_nothing = distances.is_drawn_yard && clearance_m < required_m;
         let is_void = start_m.is_none();
-        let holds = spare_figure >= 0.0 && (says_nothing || clearance_figure >= required_figure);
+        let is_clear = says_nothing || figure(&clearance)? >= figure(&required)?;
+        let holds = is_clear && figure(&spare)? >= 0.0;
         (holds || is_void).then_some(PrintedLimit {
             required,
             clearance,
             spare,
             spare_m,
         })
+    }
+
+    /// Rounded down to decimals of the unit.
+    fn down(&self, length_m: f64, decimals: usize) -> String {
+        self.unit
+            .format(length_m + KNOWN_TO_M, decimals, Rounding::Down)
     }
 }

@@ -22,6 +22,10 @@ const SHOWN_LIMITS: usize = 40;
 /// As many notes are listed.
 const SHOWN_NOTES: usize = 20;
 
+/// The bound has so many more decimals than lengths: it is nearly always that good, and two roundings a centimetre apart
+/// would hide it.
+const BOUND_EXTRA: usize = 4;
+
 /// Decimals of areas in squares of the unit, and in hectares or acres.
 const AREA_DECIMALS: usize = 1;
 const LAND_DECIMALS: usize = 3;
@@ -84,7 +88,8 @@ impl Reporter<'_> {
 
     fn headline(&self, printed: Option<&Printed>) -> String {
         let decimals = printed.map_or(2, |p| p.decimals);
-        let upper = self.length(self.outcome.placement.upper_m, decimals, Rounding::Up);
+        let upper_m = self.outcome.placement.upper_m;
+        let upper = self.length(upper_m, decimals + BOUND_EXTRA, Rounding::Up);
         let kind = self.outcome.imported.site.structure.kind.name();
         let n_pieces = self.outcome.placement.n_pieces;
         let unit = self.unit.name();
@@ -221,7 +226,10 @@ impl Reporter<'_> {
         if let Some(more @ 1..) = order.len().checked_sub(SHOWN_LIMITS) {
             let _ = writeln!(text, "  and {more} more with more spare; --json lists all");
         }
-        text
+        if self.outcome.imported.site.reading == YardReading::Parallel {
+            text += "The spare of a setback is measured to its yard. ";
+        }
+        text + "Relief gain: growth of the diameter per reduction of the required distance.\n"
     }
 
     fn other_spots(&self) -> Option<String> {

@@ -111,7 +111,8 @@ fn finish(lots: &Path, end: Result<Tally, SweepError>, writer: Writer) -> Result
 }
 
 fn summary(tally: &Tally) -> String {
-    let mut text = format!("{} lots: {} with a circle", tally.lots, tally.fits);
+    let lots = if tally.lots == 1 { "lot" } else { "lots" };
+    let mut text = format!("{} {lots}: {} with a circle", tally.lots, tally.fits);
     for (n, what) in [
         (tally.no_room, "without room"),
         (tally.invalid, "bad"),

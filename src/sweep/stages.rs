@@ -1,6 +1,6 @@
 //! The stages of a handful of lots: parse all, validate all, place all.
 //!
-//! A stage that fails, or panics, makes a row of the lot; later stages pass it over. So one lot never stops the others.
+//! A lot that a stage fails or panics on ends there with its row; later stages pass it over. So one lot never stops the others.
 
 use std::any::Any;
 use std::cell::Cell;
@@ -32,8 +32,21 @@ struct Ready {
     area: Area,
 }
 
-/// What a stage makes of a lot: something for the next stage, or its row.
-type Staged<T> = Result<T, Row>;
+/// A lot that goes no further, and why.
+struct Ended {
+    id: Value,
+    status: &'static str,
+    problem: String,
+}
+
+impl From<Ended> for Row {
+    fn from(ended: Ended) -> Row {
+        Row::bad(ended.id, ended.status, ended.problem)
+    }
+}
+
+/// What a stage makes of a lot: something for the next stage, or its end.
+type Staged<T> = Result<T, Ended>;
 
 /// Places on all lots of a handful; one row for each, in order. When cancelled, rows end at the first lot not placed.
 pub fn place_all(lots: &[Result<LotText, LotProblem>], plan: &Plan) -> Vec<Row> {
@@ -46,7 +59,7 @@ pub fn place_all(lots: &[Result<LotText, LotProblem>], plan: &Plan) -> Vec<Row> 
     let mut open = Vec::with_capacity(ready.len());
     for (i, lot) in ready.into_iter().enumerate() {
         match lot {
-            Err(row) => rows.push(Some(row)),
+            Err(ended) => rows.push(Some(ended.into())),
             Ok(lot) => {
                 rows.push(None);
                 open.push((lot.area.n_segments(), i, lot));
@@ -64,19 +77,27 @@ pub fn place_all(lots: &[Result<LotText, LotProblem>], plan: &Plan) -> Vec<Row> 
     rows.into_iter().map_while(|row| row).collect()
 }
 
-fn bad(id: &Value, problem: String) -> Row {
-    Row::bad(id.clone(), status::INVALID_LOT, problem)
+fn bad(id: Value, problem: String) -> Ended {
+    Ended {
+        id,
+        status: status::INVALID_LOT,
+        problem,
+    }
 }
 
-fn failed(id: &Value, problem: String) -> Row {
-    Row::bad(id.clone(), status::FAILED, problem)
+fn failed(id: Value, problem: String) -> Ended {
+    Ended {
+        id,
+        status: status::FAILED,
+        problem,
+    }
 }
 
-/// Runs `work` on one lot; a panic in it becomes that lot's row.
+/// Runs `work` on one lot; a panic in it is that lot's end.
 fn guarded<T>(id: impl Fn() -> Value, work: impl FnOnce() -> T) -> Staged<T> {
     catch_unwind(AssertUnwindSafe(work)).map_err(|panic| {
         let said = said_in(panic.as_ref());
-        failed(&id(), format!("the program failed on this lot: {said}"))
+        failed(id(), format!("the program failed on this lot: {said}"))
     })
 }
 
@@ -89,10 +110,10 @@ fn said_in(panic: &(dyn Any + Send)) -> &str {
 fn parsed(lot: &Result<LotText, LotProblem>) -> Staged<LotRecord> {
     let text = match lot {
         Ok(text) => text,
-        Err(problem) => return Err(bad(&problem.id, problem.to_string())),
+        Err(problem) => return Err(bad(problem.id.clone(), problem.to_string())),
     };
     let record = guarded(|| text.position.into(), || text.parse())?;
-    record.map_err(|problem| bad(&problem.id, problem.to_string()))
+    record.map_err(|problem| bad(problem.id.clone(), problem.to_string()))
 }
 
 fn validated(record: LotRecord, plan: &Plan) -> Staged<Ready> {
@@ -110,7 +131,7 @@ fn validated(record: LotRecord, plan: &Plan) -> Staged<Ready> {
     )?;
     match ready {
         Ok((plane, area)) => Ok(Ready { id, plane, area }),
-        Err(problem) => Err(bad(&id, problem)),
+        Err(problem) => Err(bad(id, problem)),
     }
 }
 
@@ -137,8 +158,8 @@ fn placed(lot: Ready, plan: &Plan) -> Option<Row> {
     let placement = guarded(|| id.clone(), || largest_on(area, plan, &snap));
     let solve_us = begun.elapsed().as_nanos() as f64 / 1000.0;
     match placement {
-        Err(row) => Some(row),
-        Ok(Err(e)) => Some(failed(&id, e.to_string())),
+        Err(ended) => Some(ended.into()),
+        Ok(Err(e)) => Some(failed(id, e.to_string()).into()),
         Ok(Ok(placement)) => row((id, &plane), &placement, snapped.get(), solve_us),
     }
 }
@@ -256,8 +277,8 @@ mod tests {
             problem(1)
         );
         assert!(problem(2).starts_with("row 3: "), "{}", problem(2));
-        let [x, y] = rows[0].centre.expect("a centre");
-        assert!((x - 5.0).hypot(y - 5.0) < 1e-9, "{x}, {y}");
+        let [x, y] = rows[0].centre.expect("a circle");
+        assert!((x - 5.0).abs() < 1e-9 && (y - 5.0).abs() < 1e-9, "{x}, {y}");
         // Circle into the corner of an L of two squares of side 10: 2 × 10 × (2 - √2).
         let diameter_m = rows[3].diameter_m.expect("a circle");
         assert!((diameter_m - 20.0 * (2.0 - 2f64.sqrt())).abs() < 1e-8);
@@ -288,8 +309,8 @@ mod tests {
             max_pieces: 1,
             ..plan(&cancel)
         };
-        let tee = "id,wkt\ntee,\"POLYGON((0 0,6 0,6 2,4 2,4 6,2 6,2 2,0 2,0 0))\"\n";
-        let row = &rows(tee, &plan)[0];
+        let bent = "wkt\n\"POLYGON((0 0,20 1,21 10,10 11,9 20,-1 19,0 0))\"\n";
+        let row = &rows(bent, &plan)[0];
         assert_eq!(row.status, status::CAP_HIT);
         assert!(row.upper_m > row.diameter_m);
     }
@@ -303,10 +324,8 @@ mod tests {
     #[test]
     fn a_panic_is_the_row_of_its_lot() {
         let row = guarded(|| "a".into(), || -> () { panic!("no {}", "luck") });
-        let problem = row.expect_err("a row").problem;
-        assert_eq!(
-            problem.as_deref(),
-            Some("the program failed on this lot: no luck")
-        );
+        let Err(ended) = row else { panic!("no end") };
+        assert_eq!(ended.problem, "the program failed on this lot: no luck");
+        assert_eq!(ended.status, status::FAILED);
     }
 }
