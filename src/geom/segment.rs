@@ -3,9 +3,6 @@
 use super::{Point, Vec2, predicates::side};
 use std::cmp::Ordering;
 
-/// Most segments that [`Segment::nearest_of`] looks at.
-pub const MOST_IN_RUN: usize = 8;
-
 /// The closed segment from `a` to `b`.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Segment {
@@ -40,44 +37,30 @@ impl Segment {
         }
     }
 
-    /// Squared distance from p, m².
+    /// Squared distance from p, m². One formula for all cases, without a branch on where the nearest point lies; a segment
+    /// without length is its first end.
     pub fn distance2(self, p: Point) -> f64 {
         let (d, v) = (self.vector(), p - self.a);
-        let along = v.dot(d);
-        let length2 = d.length2();
-        if along <= 0.0 || length2 == 0.0 {
-            v.length2()
-        } else if along >= length2 {
-            p.distance2(self.b)
-        } else {
-            let across = d.cross(v);
-            across * across / length2
-        }
+        let t = v.dot(d) / d.length2();
+        let t = if t > 0.0 { t } else { 0.0 };
+        let t = if t < 1.0 { t } else { 1.0 };
+        (v - d * t).length2()
     }
 
     pub fn distance(self, p: Point) -> f64 {
         self.distance2(p).sqrt()
     }
 
-    /// The nearest of a short run of segments, as squared distance and index; `None` of an empty run. One formula for all
-    /// cases, so that it runs without a branch; the distances are those of [`Segment::distance2`] up to rounding.
-    pub fn nearest_of(run: &[Segment], p: Point) -> Option<(f64, usize)> {
-        let mut distances2 = [f64::INFINITY; MOST_IN_RUN];
-        for (slot, s) in distances2.iter_mut().zip(run) {
-            let (d, v) = (s.vector(), p - s.a);
-            let t = v.dot(d) / d.length2();
-            let t = if t > 0.0 { t } else { 0.0 };
-            let t = if t < 1.0 { t } else { 1.0 };
-            *slot = (v - d * t).length2();
+    /// The nearest of a run of segments, as squared distance and index; infinite for an empty run.
+    pub fn nearest_of(run: &[Segment], p: Point) -> (f64, usize) {
+        let (mut best2, mut nearest) = (f64::INFINITY, 0);
+        for (i, s) in run.iter().enumerate() {
+            let distance2 = s.distance2(p);
+            let is_nearer = distance2 < best2;
+            best2 = if is_nearer { distance2 } else { best2 };
+            nearest = if is_nearer { i } else { nearest };
         }
-        let mut nearest = None;
-        let mut best2 = f64::INFINITY;
-        for (i, &distance2) in distances2[..run.len().min(MOST_IN_RUN)].iter().enumerate() {
-            if distance2 < best2 {
-                (best2, nearest) = (distance2, Some((distance2, i)));
-            }
-        }
-        nearest
+        (best2, nearest)
     }
 
     /// Where the two closed segments meet, exactly decided, the place itself rounded: `None` where they do not; for

@@ -102,13 +102,13 @@ impl<S: Summary> RunTree<S> {
             *slot = lower(node);
         }
         loop {
-            let mut first = 0;
-            for k in 1..FAN {
-                if lowers[k] < lowers[first] {
-                    first = k;
-                }
+            let (mut first, mut least) = (0, lowers[0]);
+            for (k, &lower) in lowers.iter().enumerate().skip(1) {
+                let is_less = lower < least;
+                first = if is_less { k } else { first };
+                least = if is_less { lower } else { least };
             }
-            if lowers[first] >= *best || lowers[first] == f64::INFINITY {
+            if least >= *best || least == f64::INFINITY {
                 return;
             }
             lowers[first] = f64::INFINITY;

@@ -97,6 +97,8 @@ pub struct Value {
     /// Tag and weight of the rows, weights at least 0 with sum_i y_i w_i = 1 (0 where no point is left); entries not in use
     /// have weight 0.
     pub weights: [(u32, f64); 3],
+    /// The rows with positive weight, by their places in the game, as bits.
+    pub carrying: u32,
 }
 
 impl Default for Game {
@@ -188,6 +190,7 @@ impl Game {
                 bound: f64::NEG_INFINITY,
                 point: [1.0 / 3.0; 3],
                 weights,
+                carrying: 1 << row,
             };
         }
         for _ in 0..MAX_PIVOTS {
@@ -217,20 +220,21 @@ impl Game {
         [0, 1, 2].map(|k| inverse[0][k] * h[0] + inverse[1][k] * h[1] + inverse[2][k] * h[2])
     }
 
+    /// The constraint that is broken most, rows before sides; written without branches on the figures, which no processor
+    /// could foresee.
     fn most_broken(&self, [x, y, r]: [f64; 3]) -> Option<usize> {
-        let excess = |c: Constraint| c.p * x + c.q * y + c.e * r - c.h;
-        let mut worst = BROKEN * self.scale;
-        let mut found = None;
-        for i in 3..3 + self.n_rows {
-            let by = excess(self.constraints[i]);
-            if by > worst && !self.basis.contains(&i) {
-                (worst, found) = (by, Some(i));
-            }
+        let excess = |c: &Constraint| c.p * x + c.q * y + c.e * r - c.h;
+        let (mut worst, mut found) = (BROKEN * self.scale, 0);
+        for (i, c) in self.constraints[3..3 + self.n_rows].iter().enumerate() {
+            let by = excess(c);
+            let is_worse = by > worst;
+            worst = if is_worse { by } else { worst };
+            found = if is_worse { i + 3 } else { found };
         }
-        if found.is_none() {
-            found = (0..3).find(|&i| excess(SIDES[i]) > BROKEN && !self.basis.contains(&i));
+        if found == 0 {
+            return (0..3).find(|&i| excess(&SIDES[i]) > BROKEN && !self.basis.contains(&i));
         }
-        found
+        (!self.basis.contains(&found)).then_some(found)
     }
 
     /// Brings `entering` into the basis for the constraint whose weight runs out first.
@@ -265,10 +269,12 @@ impl Game {
         let rest = (1.0 - x - y).max(0.0);
         let total = x + y + rest;
         let point = [x / total, y / total, rest / total];
+        let bound = self.greatest_column(&weights);
         Value {
-            bound: self.greatest_column(&weights),
+            bound,
             point,
             weights: self.tagged(weights),
+            carrying: bits(&weights),
         }
     }
 
@@ -289,6 +295,7 @@ impl Game {
             bound,
             point,
             weights: self.tagged(weights),
+            carrying: bits(&weights),
         })
     }
 
@@ -321,6 +328,14 @@ enum Pivot {
     Made,
     /// No weight of the basis can make way: the weights beside the entering constraint that may show it.
     NoPointLeft([f64; 3]),
+}
+
+/// The rows with positive weight as bits.
+fn bits(weights: &[(usize, f64); 3]) -> u32 {
+    weights
+        .iter()
+        .map(|&(row, y)| u32::from(y > 0.0) << row)
+        .fold(0, |bits, bit| bits | bit)
 }
 
 fn size(row: [f64; 3]) -> f64 {

@@ -159,9 +159,8 @@ impl<'a> RowIndex<'a> {
             &mut best2,
             |node| node.bounds.distance2(c),
             |run, best2| {
-                if let Some((distance2, i)) = Segment::nearest_of(&boundary[run.clone()], c)
-                    && distance2 < *best2
-                {
+                let (distance2, i) = Segment::nearest_of(&boundary[run.clone()], c);
+                if distance2 < *best2 {
                     (*best2, found) = (distance2, run.start + i);
                 }
             },

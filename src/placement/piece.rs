@@ -57,6 +57,13 @@ impl Handed {
         &self.rows[..self.n as usize]
     }
 
+    /// Adds a row of a game, which is known to be new and to find room.
+    fn take(&mut self, row: &GameRow) {
+        let n = self.n as usize;
+        (self.rows[n], self.at_corners[n]) = (row.tag, row.d);
+        self.n += 1;
+    }
+
     /// Adds a row that is not there yet, while there is room.
     fn push(&mut self, row: u32, at_corners: [f64; 3]) {
         let n = self.n as usize;
@@ -68,14 +75,18 @@ impl Handed {
 
     /// What the halves of a piece are handed, cut at the middle `m` of the side from corner `k`.
     fn halves(&self, index: &RowIndex, k: usize, m: Point) -> [Handed; 2] {
-        let mut halves = [Handed::default(); 2];
+        let mut halves = [*self; 2];
+        let mut n = 0;
         for (&row, v) in self.rows().iter().zip(&self.at_corners) {
             let (a, b, c) = (v[k], v[(k + 1) % 3], v[(k + 2) % 3]);
             let at_m = index.entry(row, m);
-            halves[0].push(row, [a, at_m, c]);
-            halves[1].push(row, [at_m, b, c]);
+            // A row that allows any radius at the middle bounds nothing here; the next one takes its place.
+            let kept = if at_m.is_finite() { 1 } else { 0 };
+            (halves[0].rows[n], halves[0].at_corners[n]) = (row, [a, at_m, c]);
+            (halves[1].rows[n], halves[1].at_corners[n]) = (row, [at_m, b, c]);
+            n += kept;
         }
-        halves
+        halves.map(|half| Handed { n: n as u8, ..half })
     }
 }
 
@@ -170,22 +181,30 @@ fn single_row_bound(
 
 /// The rows a half starts with: those that carry the bound, a weighty one first, then the newest others.
 fn hand_on(game: &Game, value: &Value) -> Handed {
-    let mut handed = Handed::default();
-    let carries = |row: &&GameRow| {
-        value
-            .weights
-            .iter()
-            .any(|&(tag, y)| tag == row.tag && y > 0.0)
+    let rows = game.rows();
+    let weighty = (0..)
+        .zip(rows)
+        .fold(0u32, |bits, (i, row)| bits | u32::from(row.w > 0.0) << i);
+    // The game's first row has weight, so there always is one.
+    let carrying_weighty = value.carrying & weighty;
+    let first = if carrying_weighty == 0 {
+        0
+    } else {
+        carrying_weighty.trailing_zeros()
     };
-    let mut add = |row: &GameRow| handed.push(row.tag, row.d);
-    add(game
-        .rows()
-        .iter()
-        .filter(carries)
-        .find(|row| row.w > 0.0)
-        .unwrap_or(&game.rows()[0]));
-    game.rows().iter().filter(carries).for_each(&mut add);
-    game.rows().iter().rev().for_each(&mut add);
+    let mut handed = Handed::default();
+    handed.take(&rows[first as usize]);
+    let mut carrying = value.carrying & !(1 << first);
+    while carrying != 0 {
+        handed.take(&rows[carrying.trailing_zeros() as usize]);
+        carrying &= carrying - 1;
+    }
+    let mut others = ((1 << rows.len()) - 1) & !value.carrying & !(1 << first);
+    while others != 0 && (handed.n as usize) < N_HANDED {
+        let newest = others.ilog2();
+        handed.take(&rows[newest as usize]);
+        others ^= 1 << newest;
+    }
     handed
 }
 
