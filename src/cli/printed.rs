@@ -127,7 +127,7 @@ impl Printer<'_> {
 
     /// What plain geometry allows at a centre, m; nothing outside the region.
     fn allowed_diameter_m(&self, at: Point) -> f64 {
-        let by_rows = self.limits.rows.iter().map(|row| row.radius(at));
+        let by_rows = self.limits.rows().map(|row| row.radius(at));
         let by_boundary = self.limits.region.boundary().iter().map(|s| s.distance(at));
         let least = by_rows.chain(by_boundary).fold(f64::INFINITY, f64::min);
         verified_radius(self.limits, at, least).map_or(0.0, |radius_m| 2.0 * radius_m)
@@ -135,7 +135,7 @@ impl Printer<'_> {
 
     fn distances(&self, at: Point) -> Vec<Distances> {
         let mut to_rows_m = vec![f64::INFINITY; self.limits.limits.len()];
-        for row in &self.limits.rows {
+        for row in self.limits.rows() {
             if let Some(least) = to_rows_m.get_mut(row.limit as usize) {
                 *least = least.min(row.feature.distance(at) - row.s);
             }

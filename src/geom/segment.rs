@@ -3,6 +3,9 @@
 use super::{Point, Vec2, predicates::side};
 use std::cmp::Ordering;
 
+/// Most segments that [`Segment::nearest_of`] looks at.
+pub const MOST_IN_RUN: usize = 8;
+
 /// The closed segment from `a` to `b`.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Segment {
@@ -54,6 +57,27 @@ impl Segment {
 
     pub fn distance(self, p: Point) -> f64 {
         self.distance2(p).sqrt()
+    }
+
+    /// The nearest of a short run of segments, as squared distance and index; `None` of an empty run. One formula for all
+    /// cases, so that it runs without a branch; the distances are those of [`Segment::distance2`] up to rounding.
+    pub fn nearest_of(run: &[Segment], p: Point) -> Option<(f64, usize)> {
+        let mut distances2 = [f64::INFINITY; MOST_IN_RUN];
+        for (slot, s) in distances2.iter_mut().zip(run) {
+            let (d, v) = (s.vector(), p - s.a);
+            let t = v.dot(d) / d.length2();
+            let t = if t > 0.0 { t } else { 0.0 };
+            let t = if t < 1.0 { t } else { 1.0 };
+            *slot = (v - d * t).length2();
+        }
+        let mut nearest = None;
+        let mut best2 = f64::INFINITY;
+        for (i, &distance2) in distances2[..run.len().min(MOST_IN_RUN)].iter().enumerate() {
+            if distance2 < best2 {
+                (best2, nearest) = (distance2, Some((distance2, i)));
+            }
+        }
+        nearest
     }
 
     /// Where the two closed segments meet, exactly decided, the place itself rounded: `None` where they do not; for

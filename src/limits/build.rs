@@ -8,20 +8,28 @@ use crate::site::{Shape, Site, SiteError, YardReading};
 /// Half-planes where they say the same as the yards: a convex lot whose setback lines meet at every corner, or, in the
 /// rounded reading, one setback all round (a circle that clears every segment of a convex lot by s clears every line by s).
 pub(super) fn suitable_lot_rows(site: &Site) -> LotRows {
-    let [part] = site.lot.area().parts.as_slice() else {
-        return LotRows::Features;
+    let lot = &site.lot;
+    let otherwise = if lot.is_plain() {
+        LotRows::Plain
+    } else {
+        LotRows::Features
     };
-    let boundary = site.lot.boundary();
+    let [part] = lot.area().parts.as_slice() else {
+        return otherwise;
+    };
     let is_linear = || match site.reading {
-        YardReading::Rounded => boundary
+        YardReading::Rounded => lot
+            .lines()
             .iter()
-            .all(|b| b.setback_m == boundary[0].setback_m),
-        YardReading::Parallel => yard::yards_meet(&part.outer, |i| boundary[i].setback_m),
+            .all(|line| line.setback_m == lot.lines()[0].setback_m),
+        YardReading::Parallel => {
+            lot.is_plain() || yard::yards_meet(&part.outer, |i| lot.boundary(i).setback_m)
+        }
     };
     if part.holes.is_empty() && part.outer.is_convex() && is_linear() {
         LotRows::HalfPlanes
     } else {
-        LotRows::Features
+        otherwise
     }
 }
 
@@ -33,7 +41,7 @@ pub(super) fn limits(site: &Site, lot_rows: LotRows) -> Result<Limits, SiteError
     let mut builder = Builder {
         site,
         limits: Vec::new(),
-        rows: Vec::with_capacity(region.boundary().len()),
+        rows: Vec::new(),
     };
     builder.lot_lines(lot_rows);
     builder.building_lines(&region);
@@ -60,9 +68,16 @@ pub(super) fn limits(site: &Site, lot_rows: LotRows) -> Result<Limits, SiteError
             })?;
         }
     }
+    let plain = lot_rows == LotRows::Plain;
+    let plain_limits = if plain {
+        site.lot.line_of_segments().to_vec()
+    } else {
+        Vec::new()
+    };
     Ok(Limits {
         limits: builder.limits,
-        rows: builder.rows,
+        listed: builder.rows,
+        plain_limits,
         region,
         lot_rows,
     })
@@ -84,14 +99,19 @@ impl Builder<'_> {
             measure: Measure::from_shell(line.setback_m),
         };
         self.limits.extend(lot.lines().iter().enumerate().map(of));
+        if lot_rows == LotRows::Plain {
+            return;
+        }
+        self.rows.reserve(lot.area().n_segments());
         let mut base = 0;
         for ring in lot.area().rings() {
-            let boundary = &lot.boundary()[base..base + ring.len()];
             for (i, segment) in ring.segments().enumerate() {
                 let limit = lot.line_of_segments()[base + i];
                 let row = match lot_rows {
-                    LotRows::HalfPlanes => half_plane_row(segment, boundary[i].setback_m, limit),
-                    LotRows::Features => self.yard_row(ring, boundary, i, limit),
+                    LotRows::HalfPlanes => {
+                        half_plane_row(segment, lot.boundary(base + i).setback_m, limit)
+                    }
+                    LotRows::Plain | LotRows::Features => self.yard_row(ring, base, i, limit),
                 };
                 self.rows.push(row);
             }
@@ -99,20 +119,14 @@ impl Builder<'_> {
         }
     }
 
-    fn yard_row(
-        &self,
-        ring: &Ring,
-        boundary: &[crate::site::lot::Boundary],
-        i: usize,
-        limit: u32,
-    ) -> Row {
-        let setback_m = boundary[i].setback_m;
+    fn yard_row(&self, ring: &Ring, base: usize, i: usize, limit: u32) -> Row {
+        let setback_m = |k: usize| self.site.lot.boundary(base + k).setback_m;
         if self.site.reading == YardReading::Parallel
-            && let Some(yard) = yard::yard(ring, |k| boundary[k].setback_m, i)
+            && let Some(yard) = yard::yard(ring, setback_m, i)
         {
             return Row::new(Feature::Convex(yard.corners()[..].into()), 1.0, 0.0, limit);
         }
-        Row::new(Feature::Segment(ring.segment(i)), 1.0, setback_m, limit)
+        Row::new(Feature::Segment(ring.segment(i)), 1.0, setback_m(i), limit)
     }
 
     /// A limit for each building line; its rows are the pieces inside the lot, in the order of the region's boundary.

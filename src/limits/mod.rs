@@ -16,6 +16,8 @@ pub use limit::{Limit, Measure, Origin, Thing};
 pub use region::Region;
 pub use row::{Otherwise, Row};
 
+use std::borrow::Cow;
+
 use crate::site::{Site, SiteError};
 
 /// Whether the lot's own rows are half-planes: they can be where the lot is convex and its setback lines meet at every
@@ -23,6 +25,9 @@ use crate::site::{Site, SiteError};
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum LotRows {
     HalfPlanes,
+    /// Segments that ask for the radius alone, as they are where no lot line has a setback; kept as the boundary they are.
+    Plain,
+    /// Yards, or segments with their setback.
     Features,
 }
 
@@ -30,7 +35,10 @@ pub enum LotRows {
 #[derive(Clone, Debug)]
 pub struct Limits {
     pub limits: Vec<Limit>,
-    pub rows: Vec<Row>,
+    /// All rows, but for those of the lot where they are plain.
+    listed: Vec<Row>,
+    /// The limit of each plain row.
+    plain_limits: Vec<u32>,
     pub region: Region,
     pub lot_rows: LotRows,
 }
@@ -43,6 +51,31 @@ impl Limits {
     /// cannot be cut into convex pieces.
     pub fn new(site: &Site) -> Result<Limits, SiteError> {
         Limits::with_lot_rows(site, build::suitable_lot_rows(site))
+    }
+
+    pub fn n_rows(&self) -> usize {
+        self.plain_limits.len() + self.listed.len()
+    }
+
+    /// Row `i`, which is below [`Limits::n_rows`].
+    pub fn row(&self, i: usize) -> Cow<'_, Row> {
+        let n_plain = self.plain_limits.len();
+        if i < n_plain {
+            let feature = Feature::Segment(self.region.boundary()[i]);
+            Cow::Owned(Row::new(feature, 1.0, 0.0, self.plain_limits[i]))
+        } else {
+            Cow::Borrowed(&self.listed[i - n_plain])
+        }
+    }
+
+    /// All rows in their order.
+    pub fn rows(&self) -> impl Iterator<Item = Cow<'_, Row>> {
+        (0..self.n_rows()).map(|i| self.row(i))
+    }
+
+    /// The rows after the lot's plain ones.
+    pub fn listed_rows(&self) -> &[Row] {
+        &self.listed
     }
 
     /// The same with the form of the lot's rows given: for comparing two sites that differ in one distance only, or for a

@@ -4,7 +4,7 @@
 //! the tangents is an inner approximation, and its answer is never worse. Repeating it is Newton's method on the rows
 //! that bind.
 
-use super::index::{RowIndex, game_weight};
+use super::index::RowIndex;
 use super::piece::{Triangle, Weighted};
 use crate::geom::{Point, Vec2};
 use crate::lp::game::{Game, GameRow};
@@ -156,7 +156,7 @@ fn tangent(index: &RowIndex, tag: u32, centre: Point, domain: &[Vec2; 3]) -> Opt
     let d = domain.map(|v| value + slope * nearest.away.dot(v));
     d.iter().all(|v| v.is_finite()).then(|| GameRow {
         d,
-        w: game_weight(row),
+        w: index.weight(tag),
         tag,
     })
 }

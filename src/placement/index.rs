@@ -3,9 +3,12 @@
 //! A tree of boxes over the rows in their order (see [`crate::geom::tree`]); half-planes, which have no box, are looked at
 //! one by one. The tree also answers, over the boundary's segments, whether a place is in the region.
 
+use std::borrow::Cow;
+use std::ops::Range;
+
 use crate::geom::tree::{Node, RunTree, Summary, ray_meets};
-use crate::geom::{Point, Segment, predicates};
-use crate::limits::{Feature, Limits, LotRows, Row};
+use crate::geom::{Bounds, Point, Segment, predicates};
+use crate::limits::{Limits, LotRows, Row};
 
 /// The extremes of w and s over rows: a bound on what any of them allows at a distance.
 #[derive(Clone, Copy, Debug)]
@@ -43,40 +46,83 @@ pub(super) struct RowIndex<'a> {
     limits: &'a Limits,
     /// Rows before this one are half-planes and looked at one by one.
     n_scanned: usize,
-    /// The rows where each is a boundary segment that asks for the radius alone.
-    plain: Option<&'a [Segment]>,
-    tree: RunTree<Weights>,
+    tree: Tree,
+}
+
+enum Tree {
+    /// All rows are the boundary's segments, each asking for the radius alone.
+    Plain(RunTree<()>),
+    Weighted(RunTree<Weights>),
 }
 
 impl<'a> RowIndex<'a> {
     pub fn new(limits: &'a Limits) -> RowIndex<'a> {
         let n_scanned = match limits.lot_rows {
             LotRows::HalfPlanes => limits.region.n_lot_segments(),
-            LotRows::Features => 0,
+            LotRows::Plain | LotRows::Features => 0,
         };
-        let rows = &limits.rows[n_scanned..];
         let boundary = limits.region.boundary();
-        let is_plain =
-            |row: &Row| row.w == 1.0 && row.s == 0.0 && matches!(row.feature, Feature::Segment(_));
-        let plain = (rows.len() == boundary.len() && rows.iter().all(is_plain)).then_some(boundary);
-        let node = |row: &Row| Node {
-            bounds: row.feature.bounds(),
-            summary: Weights {
-                s_max: row.s,
-                w_min: row.w,
-                w_max: row.w,
-            },
+        let tree = if limits.lot_rows == LotRows::Plain && limits.listed_rows().is_empty() {
+            let node = |i: usize| Node {
+                bounds: Bounds::of([boundary[i].a, boundary[i].b]),
+                summary: (),
+            };
+            Tree::Plain(RunTree::build(boundary.len(), node))
+        } else {
+            let node = |i: usize| {
+                let row = limits.row(i + n_scanned);
+                let summary = Weights {
+                    s_max: row.s,
+                    w_min: row.w,
+                    w_max: row.w,
+                };
+                Node {
+                    bounds: row.feature.bounds(),
+                    summary,
+                }
+            };
+            Tree::Weighted(RunTree::build(limits.n_rows() - n_scanned, node))
         };
         RowIndex {
             limits,
             n_scanned,
-            plain,
-            tree: RunTree::build(rows.len(), |i| node(&rows[i])),
+            tree,
         }
     }
 
-    pub fn row(&self, i: u32) -> &'a Row {
-        &self.limits.rows[i as usize]
+    pub fn row(&self, i: u32) -> Cow<'a, Row> {
+        self.limits.row(i as usize)
+    }
+
+    /// What row `i` asks at a place, in the form of a row of the game: w r <= d. For a plain row d is the distance beyond s;
+    /// with a second condition it is the radius allowed, w = 1.
+    pub fn entry(&self, i: u32, c: Point) -> f64 {
+        if let Tree::Plain(_) = self.tree {
+            return self.limits.region.boundary()[i as usize].distance(c);
+        }
+        let row = self.row(i);
+        match row.otherwise {
+            None => row.feature.distance(c) - row.s,
+            Some(_) => row.radius(c),
+        }
+    }
+
+    /// The weight that goes with [`RowIndex::entry`].
+    pub fn weight(&self, i: u32) -> f64 {
+        if let Tree::Plain(_) = self.tree {
+            return 1.0;
+        }
+        let row = self.row(i);
+        if row.otherwise.is_none() { row.w } else { 1.0 }
+    }
+
+    /// How fast [`RowIndex::entry`] can change with the place.
+    pub fn steepness(&self, i: u32) -> f64 {
+        let per = |w: f64| if w > 0.0 { 1.0 / w } else { 0.0 };
+        let row = self.row(i);
+        row.otherwise
+            .as_ref()
+            .map_or(1.0, |otherwise| per(row.w).max(per(otherwise.w)))
     }
 
     pub fn limits(&self) -> &'a Limits {
@@ -86,19 +132,20 @@ impl<'a> RowIndex<'a> {
     /// The row that allows the least radius at `c`; `likely` rows are tried first. Cost about O(log n) for rows in ring
     /// order.
     pub fn least(&self, c: Point, likely: impl Iterator<Item = u32>) -> Least {
-        match self.plain {
-            Some(boundary) => self.least_plain(boundary, c, likely),
-            None => self.least_weighted(c, likely),
+        match &self.tree {
+            Tree::Plain(tree) => self.least_plain(tree, c, likely),
+            Tree::Weighted(tree) => self.least_weighted(tree, c, likely),
         }
     }
 
     /// The nearest boundary segment, by squared distances.
     fn least_plain(
         &self,
-        boundary: &[Segment],
+        tree: &RunTree<()>,
         c: Point,
         likely: impl Iterator<Item = u32>,
     ) -> Least {
+        let boundary = self.limits.region.boundary();
         let mut found = 0;
         let mut best2 = f64::INFINITY;
         let mut visit = |i: usize, best2: &mut f64| {
@@ -108,20 +155,33 @@ impl<'a> RowIndex<'a> {
             }
         };
         likely.for_each(|i| visit(i as usize, &mut best2));
-        self.tree
-            .nearest(&mut best2, |node| node.bounds.distance2(c), visit);
+        tree.nearest(
+            &mut best2,
+            |node| node.bounds.distance2(c),
+            |run, best2| {
+                if let Some((distance2, i)) = Segment::nearest_of(&boundary[run.clone()], c)
+                    && distance2 < *best2
+                {
+                    (*best2, found) = (distance2, run.start + i);
+                }
+            },
+        );
         Least {
             row: found as u32,
             radius: best2.sqrt(),
         }
     }
 
-    fn least_weighted(&self, c: Point, likely: impl Iterator<Item = u32>) -> Least {
-        let rows = &self.limits.rows;
+    fn least_weighted(
+        &self,
+        tree: &RunTree<Weights>,
+        c: Point,
+        likely: impl Iterator<Item = u32>,
+    ) -> Least {
         let mut found = 0;
         let mut best = f64::INFINITY;
         let mut visit = |i: usize, best: &mut f64| {
-            let radius = rows[i].radius(c);
+            let radius = self.limits.row(i).radius(c);
             if radius < *best {
                 (*best, found) = (radius, i);
             }
@@ -141,8 +201,9 @@ impl<'a> RowIndex<'a> {
                 f64::INFINITY.copysign(beyond)
             }
         };
-        self.tree
-            .nearest(&mut best, lower, |i, best| visit(i + self.n_scanned, best));
+        tree.nearest(&mut best, lower, |run, best| {
+            run.for_each(|i| visit(i + self.n_scanned, best))
+        });
         Least {
             row: found as u32,
             radius: best,
@@ -157,14 +218,15 @@ impl<'a> RowIndex<'a> {
         }
         let boundary = &region.boundary()[..region.n_lot_segments()];
         let mut is_inside = false;
-        self.tree.each(
-            |b| ray_meets(b, p),
-            |i| {
-                if let Some(s) = boundary.get(i) {
-                    is_inside ^= predicates::ray_crosses(s.a, s.b, p);
-                }
-            },
-        );
+        let cross = |i: usize| {
+            if let Some(s) = boundary.get(i) {
+                is_inside ^= predicates::ray_crosses(s.a, s.b, p);
+            }
+        };
+        match &self.tree {
+            Tree::Plain(tree) => tree.each(|b| ray_meets(b, p), cross),
+            Tree::Weighted(tree) => tree.each(|b| ray_meets(b, p), cross),
+        }
         is_inside && region.keeps(p)
     }
 
@@ -175,37 +237,19 @@ impl<'a> RowIndex<'a> {
         boundary[..self.n_scanned]
             .iter()
             .for_each(|s| best = best.min(s.distance(p)));
-        self.tree.nearest(
-            &mut best,
-            |node| node.bounds.distance2(p).sqrt(),
-            |i, best| {
-                if let Some(s) = boundary.get(i + self.n_scanned) {
-                    *best = best.min(s.distance(p));
-                }
-            },
-        );
+        let visit = |run: Range<usize>, best: &mut f64| {
+            for s in run.filter_map(|i| boundary.get(i + self.n_scanned)) {
+                *best = best.min(s.distance(p));
+            }
+        };
+        match &self.tree {
+            Tree::Plain(tree) => {
+                tree.nearest(&mut best, |node| node.bounds.distance2(p).sqrt(), visit)
+            }
+            Tree::Weighted(tree) => {
+                tree.nearest(&mut best, |node| node.bounds.distance2(p).sqrt(), visit)
+            }
+        }
         best
     }
-}
-
-/// What a row asks at a place, in the form of a row of the game: w r <= d. For a plain row d is the distance beyond s; with
-/// a second condition it is the radius allowed, w = 1.
-pub(super) fn game_entry(row: &Row, c: Point) -> f64 {
-    match row.otherwise {
-        None => row.feature.distance(c) - row.s,
-        Some(_) => row.radius(c),
-    }
-}
-
-/// The weight that goes with [`game_entry`].
-pub(super) fn game_weight(row: &Row) -> f64 {
-    if row.otherwise.is_none() { row.w } else { 1.0 }
-}
-
-/// How fast [`game_entry`] can change with the place.
-pub(super) fn steepness(row: &Row) -> f64 {
-    let per = |w: f64| if w > 0.0 { 1.0 / w } else { 0.0 };
-    row.otherwise
-        .as_ref()
-        .map_or(1.0, |otherwise| per(row.w).max(per(otherwise.w)))
 }

@@ -4,7 +4,7 @@
 //! three-column game of those values bounds the radius. The rows that matter are found by column generation: the row that
 //! allows least at the game's present point comes in next.
 
-use super::index::{Least, RowIndex, game_entry, game_weight};
+use super::index::{Least, RowIndex};
 use crate::geom::Point;
 use crate::lp::game::{Game, GameRow, Value};
 
@@ -40,10 +40,16 @@ pub(super) struct Handed {
 }
 
 impl Handed {
-    /// One row at the corners of a triangle, for a root.
-    pub fn one(index: &RowIndex, row: u32, corners: &Triangle) -> Handed {
+    /// Rows at the corners of a triangle, for a root; the first has positive weight.
+    pub fn new(
+        index: &RowIndex,
+        rows: impl IntoIterator<Item = u32>,
+        corners: &Triangle,
+    ) -> Handed {
         let mut handed = Handed::default();
-        handed.push(row, corners.map(|c| game_entry(index.row(row), c)));
+        for row in rows {
+            handed.push(row, corners.map(|c| index.entry(row, c)));
+        }
         handed
     }
 
@@ -65,7 +71,7 @@ impl Handed {
         let mut halves = [Handed::default(); 2];
         for (&row, v) in self.rows().iter().zip(&self.at_corners) {
             let (a, b, c) = (v[k], v[(k + 1) % 3], v[(k + 2) % 3]);
-            let at_m = game_entry(index.row(row), m);
+            let at_m = index.entry(row, m);
             halves[0].push(row, [a, at_m, c]);
             halves[1].push(row, [at_m, b, c]);
         }
@@ -98,9 +104,22 @@ pub(super) fn look(
     handed: &Handed,
     enough: f64,
 ) -> Looked {
+    if let Some((bound, weights)) = single_row_bound(index, handed, enough) {
+        let least = Least {
+            row: handed.rows[0],
+            radius: f64::NEG_INFINITY,
+        };
+        return Looked {
+            bound,
+            weights,
+            handed: *handed,
+            point: corners[0],
+            least,
+        };
+    }
     let game_row = |tag: u32, d: [f64; 3]| GameRow {
         d,
-        w: game_weight(index.row(tag)),
+        w: index.weight(tag),
         tag,
     };
     game.start(game_row(handed.rows[0], handed.at_corners[0]));
@@ -117,7 +136,7 @@ pub(super) fn look(
         if value.bound > enough {
             least = index.least(point, game.rows().iter().map(|row| row.tag));
             if !game.has(least.row) {
-                let d = corners.map(|c| game_entry(index.row(least.row), c));
+                let d = corners.map(|c| index.entry(least.row, c));
                 if d.iter().all(|v| v.is_finite()) && game.push(game_row(least.row, d)) {
                     continue;
                 }
@@ -131,6 +150,22 @@ pub(super) fn look(
             least,
         };
     }
+}
+
+/// The bound of one row alone, where it is enough: half the pieces dropped need no more.
+fn single_row_bound(
+    index: &RowIndex,
+    handed: &Handed,
+    enough: f64,
+) -> Option<(f64, [Weighted; 3])> {
+    for (&row, d) in handed.rows().iter().zip(&handed.at_corners) {
+        let w = index.weight(row);
+        let greatest = d[0].max(d[1]).max(d[2]);
+        if w > 0.0 && greatest <= enough * w {
+            return Some((greatest / w, [(row, 1.0 / w), (row, 0.0), (row, 0.0)]));
+        }
+    }
+    None
 }
 
 /// The rows a half starts with: those that carry the bound, a weighty one first, then the newest others.

@@ -45,7 +45,7 @@ pub(super) fn gains(limits: &Limits, site: &Site, centre: Point) -> Vec<Gain> {
         return gains;
     };
     for (&row, &y) in binding.rows.iter().zip(&y) {
-        gains[limits.rows[row].limit as usize].multiplier += y;
+        gains[limits.row(row).limit as usize].multiplier += y;
     }
     for (i, limit) in limits.limits.iter().enumerate() {
         let rates: Vec<f64> = binding
@@ -72,16 +72,15 @@ struct Binding {
 impl Binding {
     fn at(limits: &Limits, centre: Point) -> Binding {
         let least = limits
-            .rows
-            .iter()
+            .rows()
             .map(|row| row.radius(centre))
             .fold(f64::INFINITY, f64::min);
-        let rows: Vec<usize> = (0..limits.rows.len())
-            .filter(|&i| limits.rows[i].radius(centre) <= least + BINDS_M)
+        let rows: Vec<usize> = (0..limits.n_rows())
+            .filter(|&i| limits.row(i).radius(centre) <= least + BINDS_M)
             .collect();
         let gradient = |&i: &usize| {
-            let nearest = limits.rows[i].feature.nearest(centre);
-            let slope = limits.rows[i].slope_at(nearest.distance);
+            let nearest = limits.row(i).feature.nearest(centre);
+            let slope = limits.row(i).slope_at(nearest.distance);
             [slope * nearest.away.x, slope * nearest.away.y]
         };
         Binding {
@@ -128,7 +127,7 @@ fn rate(
     row: usize,
     centre: Point,
 ) -> f64 {
-    let site_row = &limits.rows[row];
+    let site_row = limits.row(row);
     let asks = limit.measure.fixed_m > 0.0
         || limit.measure.share > 0.0
         || limit.measure.floor_m.is_some_and(|f| f > 0.0);
@@ -200,7 +199,7 @@ fn drawn_yard_distance(
         } else {
             0.0
         };
-        lot.boundary()[base + i].setback_m - relief_m
+        lot.boundary(base + i).setback_m - relief_m
     };
     let mut first = 0;
     for ring in lot.area().rings() {

@@ -22,6 +22,8 @@ pub(super) enum Cover {
 /// The triangles, and how they were made.
 pub(super) struct Roots {
     pub triangles: Vec<Triangle>,
+    /// For triangles on the lot's corners, the boundary segments that start at them; empty for other covers.
+    pub seeds: Vec<[u32; 3]>,
     pub cover: Cover,
 }
 
@@ -39,11 +41,13 @@ pub(super) fn roots(lot: &Area, limits: &Limits) -> Roots {
     if limits.lot_rows == LotRows::HalfPlanes {
         return Roots {
             triangles: vec![bounds.triangle_round()],
+            seeds: Vec::new(),
             cover: Cover::Round,
         };
     }
     let boxed = || Roots {
         triangles: bounds.halves().to_vec(),
+        seeds: Vec::new(),
         cover: Cover::Box,
     };
     if fills_its_box(lot, bounds) {
@@ -55,10 +59,7 @@ pub(super) fn roots(lot: &Area, limits: &Limits) -> Roots {
         .map(triangulate::triangulate)
         .collect::<Option<Vec<_>>>()
     {
-        Some(cut) => Roots {
-            triangles: on_corners(&lot.parts, &cut),
-            cover: Cover::Triangles(cut),
-        },
+        Some(cut) => on_corners(&lot.parts, cut),
         None => boxed(),
     }
 }
@@ -73,12 +74,20 @@ fn fills_its_box(lot: &Area, bounds: Bounds) -> bool {
     bounds.width() * bounds.height() < BOX_SQUARES_PER_CORNER * n as f64 * half_width * half_width
 }
 
-/// The triangles of each part, by its corners.
-pub(super) fn on_corners(parts: &[Polygon], cut: &[Vec<[u32; 3]>]) -> Vec<Triangle> {
-    let mut triangles = Vec::with_capacity(cut.iter().map(Vec::len).sum());
-    for (part, cut) in parts.iter().zip(cut) {
+/// The triangles of each part, by its corners. A part's corners are counted ring by ring, as the boundary's segments are.
+fn on_corners(parts: &[Polygon], cut: Vec<Vec<[u32; 3]>>) -> Roots {
+    let n = cut.iter().map(Vec::len).sum();
+    let (mut triangles, mut seeds) = (Vec::with_capacity(n), Vec::with_capacity(n));
+    let mut base = 0;
+    for (part, cut) in parts.iter().zip(&cut) {
         let corners = triangulate::corners_of(part);
         triangles.extend(cut.iter().map(|t| t.map(|i| corners[i as usize])));
+        seeds.extend(cut.iter().map(|t| t.map(|i| base + i)));
+        base += corners.len() as u32;
     }
-    triangles
+    Roots {
+        triangles,
+        seeds,
+        cover: Cover::Triangles(cut),
+    }
 }

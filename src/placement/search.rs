@@ -8,7 +8,7 @@ use std::collections::BinaryHeap;
 use std::sync::atomic::{AtomicBool, Ordering as Memory};
 
 use super::climb::{SettledDisc, Spot, climb, settled_disc};
-use super::index::{Least, RowIndex, game_weight, steepness};
+use super::index::{Least, RowIndex};
 use super::piece::{Handed, Looked, Piece, Triangle, halves, longest_side2, look};
 use super::record::{Leaf, Record};
 use super::roots::{Cover, Roots};
@@ -207,12 +207,18 @@ impl<'a> Search<'a> {
                 self.note(i, Leaf::NearCorners);
                 continue;
             }
-            let seed = self.weighty_row(centroid(&t));
-            let handed = Handed::one(self.index, seed, &t);
+            let seeds = roots
+                .seeds
+                .get(i as usize)
+                .copied()
+                .filter(|seeds| self.index.weight(seeds[0]) > 0.0);
+            let seeds = seeds.unwrap_or_else(|| [self.weighty_row(centroid(&t)); 3]);
+            let handed = Handed::new(self.index, seeds, &t);
+            let weights = seeds.map(|row| (row, 0.0));
             self.take(Piece {
                 corners: t,
                 bound: f64::INFINITY,
-                weights: [(seed, 0.0); 3],
+                weights,
                 handed,
                 depth: 0,
                 node: i,
@@ -404,7 +410,7 @@ impl<'a> Search<'a> {
 
     fn drop_bounded(&mut self, piece: &Piece) {
         self.dropped = self.dropped.max(piece.bound);
-        let steepness = |&(row, weight): &(u32, f64)| weight * steepness(self.index.row(row));
+        let steepness = |&(row, weight): &(u32, f64)| weight * self.index.steepness(row);
         self.steepest = self.steepest.max(piece.weights.iter().map(steepness).sum());
         self.note(piece.node, Leaf::Bounded(piece.weights));
     }
@@ -422,11 +428,7 @@ impl<'a> Search<'a> {
     /// The row that allows least at a place, or a boundary row where that one has no weight.
     fn weighty_row(&self, c: Point) -> u32 {
         let Least { row, .. } = self.index.least(c, std::iter::empty());
-        if game_weight(self.index.row(row)) > 0.0 {
-            row
-        } else {
-            0
-        }
+        if self.index.weight(row) > 0.0 { row } else { 0 }
     }
 }
 

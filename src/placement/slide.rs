@@ -35,8 +35,8 @@ pub(super) fn slide(index: &RowIndex, spot: &Spot) -> Option<[Point; 2]> {
         .fold(0.0, f64::max);
     let end = |direction: Vec2| {
         let mut reach = far;
-        for row in &index.limits().rows {
-            reach = first_bind(row, spot, direction, reach);
+        for row in index.limits().rows() {
+            reach = first_bind(&row, spot, direction, reach);
         }
         spot.centre + direction * reach
     };

@@ -2,8 +2,8 @@
 //!
 //! Shares the definition of the rows with the search and nothing else: no index, no linear program.
 
-use crate::geom::Point;
-use crate::limits::{Limits, LotRows};
+use crate::geom::{Point, Segment};
+use crate::limits::Limits;
 
 /// Why a placement does not hold.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
@@ -13,10 +13,14 @@ pub enum VerifyError {
     )]
     Outside { x: f64, y: f64 },
     #[error(
-        "row {row} allows a radius of {allowed} m where {claimed} m was claimed; the placement is withheld"
+        "the boundary allows a radius of {allowed} m where {claimed} m was claimed; the placement is withheld"
+    )]
+    LeavesRegion { allowed: f64, claimed: f64 },
+    #[error(
+        "limit {limit} allows a radius of {allowed} m where {claimed} m was claimed; the placement is withheld"
     )]
     Broken {
-        row: usize,
+        limit: u32,
         allowed: f64,
         claimed: f64,
     },
@@ -41,34 +45,32 @@ pub fn verified_radius(limits: &Limits, centre: Point, claimed: f64) -> Result<f
             y: centre.y,
         });
     }
-    let mut least = claimed;
-    let mut tightest = 0;
-    for (i, row) in limits.rows.iter().enumerate() {
+    let nearest2 = |segments: &[Segment]| {
+        segments
+            .iter()
+            .map(|s| s.distance2(centre))
+            .fold(f64::INFINITY, f64::min)
+    };
+    // The shell stays in the region whatever the rows ask; for plain rows that is all they ask.
+    let mut least = nearest2(limits.region.boundary()).sqrt().min(claimed);
+    let mut tightest = None;
+    for (i, row) in limits.listed_rows().iter().enumerate() {
         let allowed = row.radius(centre);
         if allowed < least {
-            (least, tightest) = (allowed, i);
-        }
-    }
-    // The shell stays in the region whatever the rows ask; rows that are segments or yards have said so already.
-    let boundary = limits.region.boundary();
-    let unsaid = if limits.lot_rows == LotRows::HalfPlanes {
-        boundary.len()
-    } else {
-        0
-    };
-    for (i, segment) in boundary[..unsaid].iter().enumerate() {
-        let allowed = segment.distance(centre);
-        if allowed < least {
-            (least, tightest) = (allowed, i);
+            (least, tightest) = (allowed, Some(i));
         }
     }
     let scale = centre.x.abs().max(centre.y.abs()).max(claimed);
-    if least < claimed - ROUNDING * scale {
-        return Err(VerifyError::Broken {
-            row: tightest,
-            allowed: least,
-            claimed,
-        });
+    if least >= claimed - ROUNDING * scale {
+        return Ok(least);
     }
-    Ok(least)
+    let (allowed, limit) = (least, tightest.map(|i| limits.listed_rows()[i].limit + 1));
+    Err(match limit {
+        None => VerifyError::LeavesRegion { allowed, claimed },
+        Some(limit) => VerifyError::Broken {
+            limit,
+            allowed,
+            claimed,
+        },
+    })
 }

@@ -5,7 +5,7 @@
 //! 1 in the order of the rings, the first line of a ring starting at its first corner that is not smooth.
 
 use super::{SiteError, checked_distance};
-use crate::geom::{Area, Ring, Segment, Vec2};
+use crate::geom::{Area, Ring, Segment};
 
 /// Corners that turn by less than this belong to one lot line. 15 degrees: curves on plats are sampled finer, while the
 /// corners of a surveyed lot turn by more; common practice, no source.
@@ -75,8 +75,6 @@ pub struct LotLine {
 #[derive(Clone, Debug, PartialEq)]
 pub struct Lot {
     area: Area,
-    /// One per segment, in the order of [`Area::segments`].
-    boundary: Vec<Boundary>,
     /// The lot line of each segment, as an index into `lines`.
     line_of: Vec<u32>,
     lines: Vec<LotLine>,
@@ -85,8 +83,7 @@ pub struct Lot {
 impl Lot {
     /// A lot with no setbacks.
     pub fn plain(area: Area) -> Lot {
-        let boundary = vec![Boundary::default(); area.n_segments()];
-        Lot::gathered(area, boundary)
+        Lot::gathered(area, |_| Boundary::default())
     }
 
     /// A lot with one role and setback per segment, in the order of [`Area::segments`].
@@ -106,24 +103,23 @@ impl Lot {
                 b.setback_m,
             )?;
         }
-        Ok(Lot::gathered(area, boundary))
+        Ok(Lot::gathered(area, |i| boundary[i]))
     }
 
-    fn gathered(area: Area, boundary: Vec<Boundary>) -> Lot {
+    fn gathered(area: Area, boundary: impl Fn(usize) -> Boundary) -> Lot {
         let mut lot = Lot {
-            line_of: vec![0; boundary.len()],
+            line_of: vec![0; area.n_segments()],
             lines: Vec::new(),
             area,
-            boundary,
         };
         let mut base = 0;
         for (ring_idx, ring) in lot.area.rings().enumerate() {
+            let line_of = &mut lot.line_of[base..base + ring.len()];
             gather_ring(
-                ring_idx,
-                ring,
-                &lot.boundary[base..base + ring.len()],
+                (ring_idx, ring),
+                |i| boundary(base + i),
                 &mut lot.lines,
-                &mut lot.line_of[base..base + ring.len()],
+                line_of,
             );
             base += ring.len();
         }
@@ -138,9 +134,17 @@ impl Lot {
         &self.lines
     }
 
-    /// Role and setback of each segment, in the order of [`Area::segments`].
-    pub fn boundary(&self) -> &[Boundary] {
-        &self.boundary
+    /// Role and setback of segment `i` in the order of [`Area::segments`].
+    pub fn boundary(&self, i: usize) -> Boundary {
+        let LotLine {
+            role, setback_m, ..
+        } = self.lines[self.line_of[i] as usize];
+        Boundary { role, setback_m }
+    }
+
+    /// Whether no lot line has a setback.
+    pub fn is_plain(&self) -> bool {
+        self.lines.iter().all(|line| line.setback_m == 0.0)
     }
 
     /// For each segment, in the order of [`Area::segments`], the index of its line in [`Lot::lines`].
@@ -160,29 +164,34 @@ impl Lot {
     }
 }
 
-/// Splits one ring into lot lines; `line_of` is the ring's own stretch.
+/// Splits one ring into lot lines; `boundary` and `line_of` are by the ring's own segments.
 fn gather_ring(
-    ring_idx: usize,
-    ring: &Ring,
-    boundary: &[Boundary],
+    (ring_idx, ring): (usize, &Ring),
+    boundary: impl Fn(usize) -> Boundary,
     lines: &mut Vec<LotLine>,
     line_of: &mut [u32],
 ) {
+    // 1. Whether each segment goes on from the one before it.
     let n = ring.len();
-    let mut before = (ring.segment(n - 1).vector(), boundary[n - 1]);
-    for (i, s) in ring.segments().enumerate() {
-        let here = (s.vector(), boundary[i]);
-        line_of[i] = u32::from(here.1 == before.1 && is_smooth(before.0, here.0));
+    let last = ring.segment(n - 1).vector();
+    let mut before = (last, last.length2(), boundary(n - 1));
+    for (i, (s, goes_on)) in ring.segments().zip(line_of.iter_mut()).enumerate() {
+        let d = s.vector();
+        let here = (d, d.length2(), boundary(i));
+        *goes_on = u32::from(here.2 == before.2 && is_smooth(before.0.dot(d), before.1 * here.1));
         before = here;
     }
+    // 2. A line from each segment that does not; one all round where all do.
     let start = line_of
         .iter()
         .position(|&goes_on| goes_on == 0)
         .unwrap_or(0);
+    line_of[start] = 0;
+    let first_line = lines.len();
     for i in (start..n).chain(0..start) {
-        if i == start || line_of[i] == 0 {
+        if line_of[i] == 0 {
             let number = lines.len() as u32 + 1;
-            let Boundary { role, setback_m } = boundary[i];
+            let Boundary { role, setback_m } = boundary(i);
             lines.push(LotLine {
                 number,
                 role,
@@ -192,14 +201,20 @@ fn gather_ring(
                 len: 0,
             });
         }
-        let line = lines.len() - 1;
-        lines[line].len += 1;
-        line_of[i] = line as u32;
+        line_of[i] = lines.len() as u32 - 1;
+    }
+    // 3. Each ends where the next one starts.
+    for k in first_line..lines.len() {
+        let next = lines.get(k + 1).map_or(start, |line| line.first);
+        lines[k].len = if next > lines[k].first {
+            next - lines[k].first
+        } else {
+            next + n - lines[k].first
+        };
     }
 }
 
-/// Whether the boundary turns by less than [`SMOOTH_TURN_DEG`] from direction u to direction v.
-fn is_smooth(u: Vec2, v: Vec2) -> bool {
-    let dot = u.dot(v);
-    dot > 0.0 && dot * dot > SMOOTH_COS2 * u.length2() * v.length2()
+/// Whether the boundary turns by less than [`SMOOTH_TURN_DEG`]: u · v and |u|² |v|² of the two directions.
+fn is_smooth(dot: f64, lengths2: f64) -> bool {
+    dot > 0.0 && dot * dot > SMOOTH_COS2 * lengths2
 }

@@ -16,7 +16,7 @@ const BATCH_LOTS: usize = 4096;
 /// A batch is full once so much of the file went into it, bytes; a single larger lot is a batch of its own.
 const BATCH_BYTES: u64 = 8 << 20;
 /// Lots taken by a core at once: their areas, 100 kB for ten corners each, stay in its own cache between the stages.
-const HANDFUL: usize = 128;
+const HANDFUL: usize = 1024;
 /// Batches that wait between two of reading, placing and writing.
 const WAITING: usize = 2;
 

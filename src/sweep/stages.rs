@@ -55,18 +55,26 @@ pub fn place_all(lots: &[Result<LotText, LotProblem>], plan: &Plan) -> Vec<Row> 
         .into_iter()
         .map(|lot| lot.and_then(|record| validated(record, plan)))
         .collect();
-    let mut rows = Vec::with_capacity(ready.len());
-    for lot in ready {
+    let mut rows: Vec<Option<Row>> = Vec::with_capacity(ready.len());
+    let mut open = Vec::with_capacity(ready.len());
+    for (i, lot) in ready.into_iter().enumerate() {
         match lot {
-            Err(ended) => rows.push(ended.into()),
-            Ok(_) if plan.cancel.load(Ordering::Relaxed) => break,
-            Ok(lot) => match placed(&lot, plan) {
-                Some(row) => rows.push(row),
-                None => break,
-            },
+            Err(ended) => rows.push(Some(ended.into())),
+            Ok(lot) => {
+                rows.push(None);
+                open.push((lot.area.n_segments(), i, lot));
+            }
         }
     }
-    rows
+    // Small lots first: a large one would push the code and data of its small neighbours out of the caches.
+    open.sort_unstable_by_key(|&(n_segments, i, _)| (n_segments, i));
+    for (_, i, lot) in open {
+        if plan.cancel.load(Ordering::Relaxed) {
+            break;
+        }
+        rows[i] = placed(lot, plan);
+    }
+    rows.into_iter().map_while(|row| row).collect()
 }
 
 fn bad(id: Value, problem: String) -> Ended {
@@ -138,21 +146,21 @@ fn sentences(problems: &[Problem], plane: &Plane) -> String {
 }
 
 /// The row of a valid lot; `None` when the sweep was cancelled meanwhile.
-fn placed(lot: &Ready, plan: &Plan) -> Option<Row> {
+fn placed(lot: Ready, plan: &Plan) -> Option<Row> {
+    let Ready { id, plane, area } = lot;
     let snapped: Cell<Option<Snapped>> = Cell::new(None);
     let snap = |p: Point| {
-        let s = lot.plane.snap(p);
+        let s = plane.snap(p);
         snapped.set(Some(s));
         s.site
     };
-    let area = lot.area.clone();
     let begun = Instant::now();
-    let placement = guarded(|| lot.id.clone(), || largest_on(area, plan, &snap));
+    let placement = guarded(|| id.clone(), || largest_on(area, plan, &snap));
     let solve_us = begun.elapsed().as_nanos() as f64 / 1000.0;
     match placement {
         Err(ended) => Some(ended.into()),
-        Ok(Err(e)) => Some(failed(lot.id.clone(), e.to_string()).into()),
-        Ok(Ok(placement)) => row(lot, &placement, snapped.get(), solve_us),
+        Ok(Err(e)) => Some(failed(id, e.to_string()).into()),
+        Ok(Ok(placement)) => row((id, &plane), &placement, snapped.get(), solve_us),
     }
 }
 
@@ -187,7 +195,13 @@ fn lot_of(area: Area, setback_m: f64) -> Result<Lot, SiteError> {
     Lot::new(area, boundary)
 }
 
-fn row(lot: &Ready, placement: &Placement, snapped: Option<Snapped>, solve_us: f64) -> Option<Row> {
+fn row(
+    lot: (Value, &Plane),
+    placement: &Placement,
+    snapped: Option<Snapped>,
+    solve_us: f64,
+) -> Option<Row> {
+    let (id, plane) = lot;
     let status = match placement.status {
         Status::Fits => status::FITS,
         Status::NoRoom => status::NO_ROOM,
@@ -197,10 +211,10 @@ fn row(lot: &Ready, placement: &Placement, snapped: Option<Snapped>, solve_us: f
     let centre = placement.circle.map(|circle| match snapped {
         // What was snapped last is what was verified; its input coordinates give it back to the bit.
         Some(s) if s.site == circle.centre => s.input,
-        _ => lot.plane.from_site(circle.centre),
+        _ => plane.from_site(circle.centre),
     });
     Some(Row {
-        id: lot.id.clone(),
+        id,
         status,
         diameter_m: placement.circle.map(|circle| circle.diameter_m),
         upper_m: Some(placement.upper_m),

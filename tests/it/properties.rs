@@ -61,11 +61,8 @@ fn relaxing_never_shrinks_and_another_thing_never_grows() {
             .iter_mut()
             .for_each(|k| k.required_m *= 0.5);
         if site.reading == YardReading::Rounded {
-            let halves: Vec<f64> = site
-                .lot
-                .boundary()
-                .iter()
-                .map(|b| 0.5 * b.setback_m)
+            let halves: Vec<f64> = (0..site.lot.area().n_segments())
+                .map(|i| 0.5 * site.lot.boundary(i).setback_m)
                 .collect();
             relaxed.lot = lot_with_setbacks(site.lot.area().clone(), &halves);
         }

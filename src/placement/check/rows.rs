@@ -1,5 +1,7 @@
 //! Rows as the checker sees them: upper bounds of what they ask at a place.
 
+use std::borrow::Cow;
+
 use super::interval::{Interval, Vector};
 use crate::geom::{Point, Segment, predicates};
 use crate::limits::{Feature, Limits, LotRows, Otherwise, Row};
@@ -38,10 +40,10 @@ impl<'a> Rows<'a> {
         self.sliver_m
     }
 
-    fn row(&self, i: u32) -> Result<&'a Row, String> {
-        self.limits
-            .rows
-            .get(i as usize)
+    fn row(&self, i: u32) -> Result<Cow<'a, Row>, String> {
+        let is_known = (i as usize) < self.limits.n_rows();
+        is_known
+            .then(|| self.limits.row(i as usize))
             .ok_or_else(|| format!("there is no row {i}"))
     }
 
@@ -60,10 +62,10 @@ impl<'a> Rows<'a> {
             }
             let row = self.row(i)?;
             let y = Interval::exact(y);
-            w = w + y * Interval::exact(weight_of(row));
+            w = w + y * Interval::exact(weight_of(&row));
             for (column, &c) in columns.iter_mut().zip(t) {
                 let asked =
-                    self.asked(i, row, c) + Interval::exact(self.sliver_m * lipschitz_of(row));
+                    self.asked(i, &row, c) + Interval::exact(self.sliver_m * lipschitz_of(&row));
                 if !asked.hi.is_finite() {
                     return Err(format!("row {i} allows any radius at a corner"));
                 }
@@ -137,7 +139,7 @@ impl<'a> Rows<'a> {
             return Err(format!("row {i} has no weight"));
         }
         let (away, distance) = self
-            .nearest_of(i, row, c)
+            .nearest_of(i, &row, c)
             .ok_or_else(|| format!("row {i} touches the centre"))?;
         let radius = match row.otherwise.as_deref() {
             None => {
@@ -145,7 +147,7 @@ impl<'a> Rows<'a> {
                     .over(Interval::exact(row.w))
                     .hi
             }
-            Some(otherwise) => radius_with(row, otherwise, distance).hi,
+            Some(otherwise) => radius_with(&row, otherwise, distance).hi,
         };
         let is_straight = matches!(row.feature, Feature::HalfPlane { .. });
         Ok(Held {

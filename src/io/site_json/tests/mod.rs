@@ -61,7 +61,7 @@ fn good(file: &Value, options: &Options) -> Imported {
 fn at(imported: &Imported, x: f64, y: f64) -> (Role, f64) {
     let p = imported.plane.to_site(Point::new(x, y)).expect("in range");
     let lot = &imported.site.lot;
-    let found = lot.area().segments().zip(lot.boundary());
+    let found = lot.area().segments().zip((0..).map(|i| lot.boundary(i)));
     let near = |(s, _): &(Segment, _)| s.distance(p) < 1e-9;
     let boundary = found.into_iter().find(near).expect("a segment there").1;
     (boundary.role, boundary.setback_m)
