@@ -69,8 +69,8 @@ pub const SWEEP: &str = r#"LOTS, told apart by how it begins; each lot is a Poly
   GeoJSON FeatureCollection   streamed; `id` of the feature or among its properties
   GeoJSON text sequence       RFC 8142
   CSV                         with a heading; columns `wkt` and perhaps `id`; commas, semicolons or tabs
---setback applies to every lot line of every lot. Lots of a sweep carry no roles, so --front, --side and --rear are
-refused.
+--setback applies to every lot line of every lot. Setbacks and roles among a feature's properties are not read, so
+--front, --side and --rear are refused: place such a lot by itself.
 
 One row per lot, in the order of the file, with the members or columns
   id          the file's own, or the lot's position from 1
