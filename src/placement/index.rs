@@ -10,6 +10,10 @@ use crate::geom::tree::{Node, RunTree, Summary, ray_meets};
 use crate::geom::{Bounds, Point, Segment, predicates};
 use crate::limits::{Limits, LotRows, Row};
 
+/// Plain rows up to this many are looked at one by one: a query from the middle of a room comes near most of so few runs, and
+/// a loop without branches over 100 segments costs less than half of the tree's turns.
+const FEW_SEGMENTS: usize = 24;
+
 /// The extremes of w and s over rows: a bound on what any of them allows at a distance.
 #[derive(Clone, Copy, Debug)]
 struct Weights {
@@ -50,7 +54,9 @@ pub(super) struct RowIndex<'a> {
 }
 
 enum Tree {
-    /// All rows are the boundary's segments, each asking for the radius alone.
+    /// All rows are the boundary's segments, each asking for the radius alone, and few enough to look at one by one.
+    Few,
+    /// The same in any number.
     Plain(RunTree<()>),
     Weighted(RunTree<Weights>),
 }
@@ -62,7 +68,10 @@ impl<'a> RowIndex<'a> {
             LotRows::Plain | LotRows::Features => 0,
         };
         let boundary = limits.region.boundary();
-        let tree = if limits.lot_rows == LotRows::Plain && limits.listed_rows().is_empty() {
+        let is_plain = limits.lot_rows == LotRows::Plain && limits.listed_rows().is_empty();
+        let tree = if is_plain && boundary.len() <= FEW_SEGMENTS {
+            Tree::Few
+        } else if is_plain {
             let node = |i: usize| Node {
                 bounds: Bounds::of([boundary[i].a, boundary[i].b]),
                 summary: (),
@@ -97,7 +106,7 @@ impl<'a> RowIndex<'a> {
     /// What row `i` asks at a place, in the form of a row of the game: w r <= d. For a plain row d is the distance beyond s;
     /// with a second condition it is the radius allowed, w = 1.
     pub fn entry(&self, i: u32, c: Point) -> f64 {
-        if let Tree::Plain(_) = self.tree {
+        if let Tree::Few | Tree::Plain(_) = self.tree {
             return self.limits.region.boundary()[i as usize].distance(c);
         }
         let row = self.row(i);
@@ -109,7 +118,7 @@ impl<'a> RowIndex<'a> {
 
     /// The weight that goes with [`RowIndex::entry`].
     pub fn weight(&self, i: u32) -> f64 {
-        if let Tree::Plain(_) = self.tree {
+        if let Tree::Few | Tree::Plain(_) = self.tree {
             return 1.0;
         }
         let row = self.row(i);
@@ -133,6 +142,10 @@ impl<'a> RowIndex<'a> {
     /// order.
     pub fn least(&self, c: Point, likely: impl Iterator<Item = u32>) -> Least {
         match &self.tree {
+            Tree::Few => {
+                let (distance2, i) = Segment::nearest_of(self.limits.region.boundary(), c);
+                Least { row: i as u32, radius: distance2.sqrt() }
+            }
             Tree::Plain(tree) => self.least_plain(tree, c, likely),
             Tree::Weighted(tree) => self.least_weighted(tree, c, likely),
         }
@@ -212,7 +225,7 @@ impl<'a> RowIndex<'a> {
     /// Whether `p` lies in the region, as [`crate::limits::Region::contains`] has it.
     pub fn is_in_region(&self, p: Point) -> bool {
         let region = &self.limits.region;
-        if self.n_scanned > 0 {
+        if self.n_scanned > 0 || matches!(self.tree, Tree::Few) {
             return region.contains(p);
         }
         let boundary = &region.boundary()[..region.n_lot_segments()];
@@ -223,6 +236,7 @@ impl<'a> RowIndex<'a> {
             }
         };
         match &self.tree {
+            Tree::Few => {}
             Tree::Plain(tree) => tree.each(|b| ray_meets(b, p), cross),
             Tree::Weighted(tree) => tree.each(|b| ray_meets(b, p), cross),
         }
@@ -242,6 +256,7 @@ impl<'a> RowIndex<'a> {
             }
         };
         match &self.tree {
+            Tree::Few => best = best.min(Segment::nearest_of(boundary, p).0.sqrt()),
             Tree::Plain(tree) => {
                 tree.nearest(&mut best, |node| node.bounds.distance2(p).sqrt(), visit)
             }
