@@ -192,6 +192,8 @@ mod tests {
     }
 
     proptest! {
+        #![proptest_config(crate::seeded::config())]
+
         #[test]
         fn printed_lengths_never_flatter(
             length_m in -1e7..1e7f64, decimals in 0..8usize, unit in 0..3usize,
