@@ -8,5 +8,6 @@ mod program;
 mod proofs;
 mod properties;
 mod reference;
+mod seeded;
 mod support;
 mod sweep;
