@@ -11,3 +11,4 @@ mod reference;
 mod seeded;
 mod support;
 mod sweep;
+mod tidy;
