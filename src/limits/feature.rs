@@ -1,7 +1,8 @@
 //! Convex features: what a row keeps its distance from.
 //!
-//! The distance to each is a convex function of the place. A half-plane's is signed, which changes nothing where it is
-//! positive and keeps it linear throughout.
+//! The distance to each is a convex function of the place. It is signed: inside a half-plane, disc or polygon it is the depth
+//! below zero. That changes nothing where a circle may lie, keeps the function convex, and shows at once that nothing
+//! lies between two yards that abut.
 
 use crate::geom::{Bounds, Point, Segment, Vec2};
 
@@ -26,9 +27,10 @@ pub enum Feature {
 /// The nearest of a feature, seen from a place outside it.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Nearest {
-    /// In metres; 0 inside the feature, negative inside a half-plane.
+    /// In metres; negative inside.
     pub distance: f64,
-    /// Unit vector from the nearest point to the place: the gradient of the distance. Zero inside.
+    /// Unit vector from the nearest point to the place, from inside towards the nearest side: the gradient of the distance.
+    /// Zero at a point.
     pub away: Vec2,
     /// How far the nearest point's bulge may be relied on: the distance, or infinite for a half-plane, along whose
     /// border the distance stays linear.
@@ -45,16 +47,17 @@ impl Feature {
         })
     }
 
-    /// Distance from `c`, m.
+    /// Distance from `c`, m; negative inside.
     pub fn distance(&self, c: Point) -> f64 {
         match self {
             Feature::Segment(s) => s.distance(c),
             Feature::HalfPlane { normal, offset } => normal.dot(c.to_vec2()) - offset,
             Feature::Point(p) => c.distance(*p),
-            Feature::Disc { centre, radius } => (c.distance(*centre) - radius).max(0.0),
-            Feature::Convex(corners) => {
-                nearest_of_convex(corners, c).map_or(0.0, |q| c.distance(q))
-            }
+            Feature::Disc { centre, radius } => c.distance(*centre) - radius,
+            Feature::Convex(corners) => match convex_side(corners, c) {
+                ConvexSide::Outside(q) => c.distance(q),
+                ConvexSide::Inside { depth, .. } => -depth,
+            },
         }
     }
 
@@ -68,11 +71,6 @@ impl Feature {
                 reach: distance,
             }
         };
-        let inside = Nearest {
-            distance: 0.0,
-            away: Vec2::ZERO,
-            reach: 0.0,
-        };
         match self {
             Feature::Segment(s) => from(s.nearest(c)),
             Feature::HalfPlane { normal, .. } => Nearest {
@@ -82,18 +80,21 @@ impl Feature {
             },
             Feature::Point(p) => from(*p),
             Feature::Disc { centre, radius } => {
-                let d = from(*centre);
-                if d.distance <= *radius {
-                    inside
-                } else {
-                    Nearest {
-                        distance: d.distance - radius,
-                        reach: d.distance - radius,
-                        ..d
-                    }
+                let whole = from(*centre);
+                Nearest {
+                    distance: whole.distance - radius,
+                    reach: (whole.distance - radius).max(0.0),
+                    ..whole
                 }
             }
-            Feature::Convex(corners) => nearest_of_convex(corners, c).map_or(inside, from),
+            Feature::Convex(corners) => match convex_side(corners, c) {
+                ConvexSide::Outside(q) => from(q),
+                ConvexSide::Inside { depth, outward } => Nearest {
+                    distance: -depth,
+                    away: outward,
+                    reach: 0.0,
+                },
+            },
         }
     }
 
@@ -115,21 +116,35 @@ impl Feature {
     }
 }
 
-/// The nearest point of a counter-clockwise convex polygon, or `None` from inside it.
-fn nearest_of_convex(corners: &[Point], c: Point) -> Option<Point> {
-    let mut best = None;
+/// Where a place lies to a convex polygon.
+enum ConvexSide {
+    /// The nearest point of the polygon.
+    Outside(Point),
+    /// Depth below the nearest side, m, and the direction out through it.
+    Inside { depth: f64, outward: Vec2 },
+}
+
+/// Where `c` lies to a counter-clockwise convex polygon.
+fn convex_side(corners: &[Point], c: Point) -> ConvexSide {
+    let mut outside = None;
     let mut best2 = f64::INFINITY;
+    let (mut depth, mut outward) = (f64::INFINITY, Vec2::ZERO);
     for (i, &a) in corners.iter().enumerate() {
         let s = Segment::new(a, corners[if i + 1 == corners.len() { 0 } else { i + 1 }]);
-        if s.vector().cross(c - a) < 0.0 {
+        let across = s.vector().cross(c - a);
+        if across < 0.0 {
             let q = s.nearest(c);
             let d2 = c.distance2(q);
             if d2 < best2 {
-                (best2, best) = (d2, Some(q));
+                (best2, outside) = (d2, Some(q));
             }
+        } else if let Some(along) = s.vector().unit()
+            && across < depth * s.length()
+        {
+            (depth, outward) = (across / s.length(), -along.left());
         }
     }
-    best
+    outside.map_or(ConvexSide::Inside { depth, outward }, ConvexSide::Outside)
 }
 
 #[cfg(test)]
@@ -159,7 +174,7 @@ mod tests {
         let square: Box<[Point]> = [p(0.0, 0.0), p(2.0, 0.0), p(2.0, 2.0), p(0.0, 2.0)].into();
         check(Feature::Convex(square.clone()), (5.0, 1.0), 3.0, (1.0, 0.0));
         check(Feature::Convex(square.clone()), (5.0, 6.0), 5.0, (0.6, 0.8));
-        check(Feature::Convex(square), (1.0, 1.9), 0.0, (0.0, 0.0));
+        check(Feature::Convex(square), (1.0, 1.9), -0.1, (0.0, 1.0));
         check(
             Feature::Disc {
                 centre: p(0.0, 0.0),
@@ -174,9 +189,9 @@ mod tests {
                 centre: p(0.0, 0.0),
                 radius: 2.0,
             },
-            (1.0, 1.0),
-            0.0,
-            (0.0, 0.0),
+            (0.0, 1.0),
+            -1.0,
+            (0.0, 1.0),
         );
         check(Feature::Point(p(1.0, 0.0)), (1.0, -2.0), 2.0, (0.0, -1.0));
         check(

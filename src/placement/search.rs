@@ -69,6 +69,9 @@ const HOPELESS: f64 = 2.1;
 /// settles another room that is about as good.
 const NEAR_TIE: f64 = 0.98;
 
+/// Discs kept at the most: they are looked through one by one for every piece.
+const MAX_DISCS: usize = 80;
+
 /// Near ties that are climbed to at the most: discs are looked through one by one.
 const MAX_CLIMBED: usize = 64;
 
@@ -331,8 +334,8 @@ impl<'a> Search<'a> {
         let spot = self.climb_from(looked);
         if spot.radius > self.best_radius() {
             self.best = Some(spot);
+            self.settle(&spot);
         }
-        self.settle(&spot);
         true
     }
 
@@ -367,8 +370,11 @@ impl<'a> Search<'a> {
         )
     }
 
-    /// Adds the disc that a spot settles, if it settles one.
+    /// Adds the disc that a spot settles, if it settles one and there is room for more.
     fn settle(&mut self, spot: &Spot) {
+        if self.discs.len() >= MAX_DISCS {
+            return;
+        }
         let Some(disc) = settled_disc(self.index, spot).filter(|d| d.radius <= self.enough())
         else {
             return;

@@ -86,10 +86,10 @@ pub enum Plane {
     Given { unit: LengthUnit, origin: Point },
 }
 
-/// A point that input coordinates can name exactly.
+/// A place in the site plane and in input coordinates.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Snapped {
-    /// In input coordinates; printed with all digits and read again it gives `site` to the bit.
+    /// In input coordinates; plane coordinates printed with all digits and read again give `site` to the bit.
     pub input: Point,
     /// In the site plane.
     pub site: Point,
@@ -230,14 +230,17 @@ impl Plane {
         }
     }
 
-    /// The nearest point that input coordinates name exactly, in both: verify `site`, print `input`, and what is read
-    /// again is what was verified. Moves by no more than the rounding of the input coordinates (2e-9 m for longitudes,
-    /// half a unit in the last place for plane coordinates).
+    /// What to verify and what to print for a place. Plane coordinates: the nearest point that they name exactly, so that
+    /// what is read again is what was verified; it moves by half a unit in their last place. Longitudes and latitudes: the
+    /// place itself, since their last digit (2e-9 m) is finer than the projection's own bound.
     pub fn snap(&self, site: Point) -> Snapped {
         let input = self.from_site(site);
-        Snapped {
-            input,
-            site: self.to_site(input).unwrap_or(site),
+        match self {
+            Plane::LonLat { .. } => Snapped { input, site },
+            Plane::Given { .. } => Snapped {
+                input,
+                site: self.to_site(input).unwrap_or(site),
+            },
         }
     }
 

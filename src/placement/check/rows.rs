@@ -98,25 +98,32 @@ impl<'a> Rows<'a> {
         }
     }
 
-    /// An interval whose upper end is above the distance.
+    /// An interval whose upper end is above the signed distance.
     fn distance(&self, i: u32, row: &Row, c: Point) -> Interval {
         match &row.feature {
             Feature::HalfPlane { .. } => self.beyond_line(i, c),
             Feature::Segment(s) => distance_to(*s, c),
             Feature::Point(p) => Vector::between(*p, c).length(),
-            Feature::Disc { centre, radius } => (Vector::between(*centre, c).length()
-                - Interval::exact(*radius))
-            .max(Interval::exact(0.0)),
+            Feature::Disc { centre, radius } => {
+                Vector::between(*centre, c).length() - Interval::exact(*radius)
+            }
             Feature::Convex(corners) => {
                 let sides = || {
                     (0..corners.len())
                         .map(|k| Segment::new(corners[k], corners[(k + 1) % corners.len()]))
                 };
-                if sides().all(|s| predicates::orient(s.a, s.b, c) >= 0.0) {
-                    return Interval::exact(0.0);
-                }
-                let nearest = sides().map(|s| distance_to(s, c)).reduce(Interval::min);
-                nearest.unwrap_or(Interval::exact(f64::INFINITY))
+                let outside = || sides().filter(|s| predicates::orient(s.a, s.b, c) < 0.0);
+                let nearest = outside().map(|s| distance_to(s, c)).reduce(Interval::min);
+                // Inside, the depth is the least distance from the lines of the sides; a side without length has none.
+                let depths = sides()
+                    .filter(|s| s.a != s.b)
+                    .map(|s| left_of(s, c))
+                    .reduce(Interval::min);
+                let inside = depths.map(|depth| Interval {
+                    lo: -depth.hi,
+                    hi: -depth.lo,
+                });
+                nearest.or(inside).unwrap_or(Interval::exact(f64::INFINITY))
             }
         }
     }
@@ -127,9 +134,7 @@ impl<'a> Rows<'a> {
             self.limits.lot_rows == LotRows::HalfPlanes,
             "half-planes come from the lot's segments"
         );
-        let s = self.limits.region.boundary()[i as usize];
-        let along = Vector::between(s.a, s.b);
-        along.cross(Vector::between(s.a, c)).over(along.length())
+        left_of(self.limits.region.boundary()[i as usize], c)
     }
 
     /// Direction, distance and radius of a row at a place, for a settled disc; refused for rows without weight.
@@ -182,6 +187,9 @@ impl<'a> Rows<'a> {
                 return (rest.lo > 0.0).then(|| (whole.over(length), rest));
             }
             Feature::Convex(corners) => {
+                if self.distance(i, row, c).hi <= 0.0 {
+                    return None;
+                }
                 let sides = (0..corners.len())
                     .map(|k| Segment::new(corners[k], corners[(k + 1) % corners.len()]));
                 let nearest = sides.min_by(|a, b| a.distance2(c).total_cmp(&b.distance2(c)))?;
@@ -218,6 +226,12 @@ fn radius_with(row: &Row, otherwise: &Otherwise, distance: Interval) -> Interval
     by(row.w, row.s)
         .max(by(otherwise.w, otherwise.s))
         .max(Interval::exact(otherwise.free_radius))
+}
+
+/// The signed distance from the segment's line, positive on its left.
+fn left_of(s: Segment, c: Point) -> Interval {
+    let along = Vector::between(s.a, s.b);
+    along.cross(Vector::between(s.a, c)).over(along.length())
 }
 
 /// The distance from a point of the segment: above the least.
