@@ -5,6 +5,9 @@
 
 #![forbid(unsafe_code)]
 
+#[cfg(test)]
+mod seeded;
+
 /// Lengths, areas and how they are typed and printed, rounded to the side that is asked for.
 pub mod units;
 

@@ -205,6 +205,8 @@ mod tests {
     }
 
     proptest! {
+        #![proptest_config(crate::seeded::config())]
+
         #[test]
         fn pieces_are_convex_and_hold_what_the_area_holds(seed: u64) {
             let mut dice = Dice(seed);

@@ -191,20 +191,32 @@ mod tests {
         assert_eq!(LengthUnit::from_name("feet"), None);
     }
 
+    #[track_caller]
+    fn check_length(length_m: f64, decimals: usize, unit: LengthUnit) {
+        let back = |r| unit.to_m(unit.format(length_m, decimals, r).parse::<f64>().unwrap());
+        let step_m = unit.to_m(1.0) * 10f64.powi(-(decimals as i32)) * (1.0 + 1e-6);
+        let (down, up) = (back(Rounding::Down), back(Rounding::Up));
+        // Never to the flattering side, and no farther than a step and the rounding of the length in two units.
+        let rounding_m = 4.0 * f64::EPSILON * length_m.abs();
+        assert!(down <= length_m && length_m - down <= step_m + rounding_m);
+        assert!(up >= length_m && up - length_m <= step_m + rounding_m);
+        assert!((back(Rounding::Nearest) - length_m).abs() <= 0.5 * step_m + rounding_m);
+    }
+
+    /// Found by the property below: the rounding between two units shows where a step is as small.
+    #[test]
+    fn a_printed_length_of_many_digits_never_flatters() {
+        check_length(7_442_709.261_976_429, 7, LengthUnit::UsSurveyFoot);
+    }
+
     proptest! {
+        #![proptest_config(crate::seeded::config())]
+
         #[test]
         fn printed_lengths_never_flatter(
             length_m in -1e7..1e7f64, decimals in 0..8usize, unit in 0..3usize,
         ) {
-            let unit = LengthUnit::ALL[unit];
-            let back = |r| unit.to_m(unit.format(length_m, decimals, r).parse::<f64>().unwrap());
-            let step_m = unit.to_m(1.0) * 10f64.powi(-(decimals as i32)) * (1.0 + 1e-6);
-            let (down, up) = (back(Rounding::Down), back(Rounding::Up));
-            // Never to the flattering side, and no farther than a step and the rounding of the length in two units.
-            let rounding_m = 4.0 * f64::EPSILON * length_m.abs();
-            prop_assert!(down <= length_m && length_m - down <= step_m + rounding_m);
-            prop_assert!(up >= length_m && up - length_m <= step_m + rounding_m);
-            prop_assert!((back(Rounding::Nearest) - length_m).abs() <= 0.5 * step_m + rounding_m);
+            check_length(length_m, decimals, LengthUnit::ALL[unit]);
         }
 
         /// The hard case: lengths that are round in the unit, up to the last bit.

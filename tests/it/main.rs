@@ -8,5 +8,7 @@ mod program;
 mod proofs;
 mod properties;
 mod reference;
+mod seeded;
 mod support;
 mod sweep;
+mod tidy;

@@ -252,6 +252,8 @@ mod tests {
     }
 
     proptest! {
+        #![proptest_config(crate::seeded::config())]
+
         #[test]
         fn random_polygons_are_covered(seed: u64) {
             check(&any_polygon(&mut Dice(seed)));

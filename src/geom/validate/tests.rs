@@ -437,6 +437,8 @@ fn large_rings_pass() {
 }
 
 proptest! {
+    #![proptest_config(crate::seeded::config())]
+
     #[test]
     fn simple_polygons_pass_unchanged(seed: u64) {
         let polygon = any_polygon(&mut Dice(seed));

@@ -196,6 +196,8 @@ fn refuses_files_that_hold_no_lots() {
 }
 
 proptest! {
+    #![proptest_config(crate::seeded::config())]
+
     /// Damaged files of every kind: every lot is read or refused, and the reading ends.
     #[test]
     fn damaged_files_end(

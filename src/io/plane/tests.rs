@@ -50,6 +50,8 @@ fn a_few_centimetres_come_out_right() {
 }
 
 proptest! {
+    #![proptest_config(crate::seeded::config())]
+
     /// Against geodesics on the ellipsoid (Karney's algorithm in geographiclib-rs): the bound of the module's table.
     #[test]
     fn distances_are_those_of_geodesics(

@@ -424,6 +424,8 @@ fn a_file_cut_off_anywhere_is_refused() {
 }
 
 proptest! {
+    #![proptest_config(crate::seeded::config())]
+
     /// Bytes changed at random: read or refused, and never a message with a control character in it.
     #[test]
     fn damaged_files_are_read_or_refused(
