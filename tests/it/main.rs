@@ -10,3 +10,4 @@ mod properties;
 mod reference;
 mod support;
 mod sweep;
+mod sweep_setbacks;
