@@ -46,16 +46,23 @@ pub fn refuse_columns(names: impl Iterator<Item = impl AsRef<str>>) -> Result<()
     Ok(())
 }
 
-/// Whether so many different letters of ours are there that two edits, or one of the short name, could be all.
+/// The letters of the long names and of the short one, as bits.
+const LONG_LETTERS: u32 = letters(b"setback_m");
+const SHORT_LETTERS: u32 = letters(b"roles");
+
+const fn letters(name: &[u8]) -> u32 {
+    let (mut all, mut i) = (0, 0);
+    while i < name.len() {
+        all |= 1 << (name[i].to_ascii_lowercase() & 31);
+        i += 1;
+    }
+    all
+}
+
+/// Whether at most two letters of the long names are missing, or one of the short: each takes an edit.
 fn may_be_slip(name: &str) -> bool {
-    let letters = |name: &str| {
-        let bit = |b: u8| 1u32 << (b.to_ascii_lowercase() & 31);
-        name.bytes().fold(0, |all, b| all | bit(b))
-    };
-    let here = letters(name);
-    let shared = |ours: &str| (letters(ours) & here).count_ones();
-    shared("setback_m") + 2 >= letters("setback_m").count_ones()
-        || shared("roles") + 1 >= letters("roles").count_ones()
+    let here = letters(name.as_bytes());
+    (LONG_LETTERS & !here).count_ones() <= 2 || (SHORT_LETTERS & !here).count_ones() <= 1
 }
 
 /// Setbacks by role as a file gives them, m.
