@@ -120,7 +120,7 @@ impl<R: Read> Table<R> {
     /// inside cells without quotation marks may be odd in number, but then a row ends with its line.
     fn is_left_open(&self) -> bool {
         let metered = self.reader.get_ref();
-        metered.is_at_end && metered.n_marks % 2 == 1 && self.row.as_slice().contains(&b'\n')
+        metered.is_at_end && metered.has_odd_marks && self.row.as_slice().contains(&b'\n')
     }
 }
 
@@ -136,8 +136,8 @@ struct Metered<R> {
     reader: R,
     /// Bytes the row may still take; the buffer of the table reads ahead by less than it matters.
     left: usize,
-    /// Quotation marks so far.
-    n_marks: usize,
+    /// Whether the quotation marks so far are odd in number.
+    has_odd_marks: bool,
     is_at_end: bool,
 }
 
@@ -146,7 +146,7 @@ impl<R> Metered<R> {
         Metered {
             reader,
             left: MAX_TEXT_BYTES,
-            n_marks: 0,
+            has_odd_marks: false,
             is_at_end: false,
         }
     }
@@ -162,7 +162,8 @@ impl<R: Read> Read for Metered<R> {
         }
         let n = self.reader.read(buffer)?;
         let read = buffer.get(..n).unwrap_or_default();
-        self.n_marks += read.iter().filter(|b| **b == b'"').count();
+        let is_odd = |odd, b: &u8| odd ^ u8::from(*b == b'"');
+        self.has_odd_marks ^= read.iter().fold(0, is_odd) == 1;
         self.left = self.left.saturating_sub(n);
         self.is_at_end = n == 0 && !buffer.is_empty();
         Ok(n)

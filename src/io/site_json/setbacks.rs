@@ -14,14 +14,9 @@ use crate::site::lot::Boundary;
 
 /// Members of a lot that say something of its setbacks.
 pub const OF_SETBACKS: [&str; 3] = ["setback_m", "setbacks_m", "roles"];
-/// The shortest and longest names compared with ours, bytes: two edits away, in letters that may take several bytes.
-const NEAR_LENGTHS: std::ops::RangeInclusive<usize> = 4..=18;
-
 /// Whether a member is one of [`OF_SETBACKS`], or a slip away from one. Quick on names that are far from them.
 pub fn is_near(name: &str) -> bool {
-    NEAR_LENGTHS.contains(&name.len())
-        && may_be_slip(name)
-        && (OF_SETBACKS.contains(&name) || misspelt(name, &OF_SETBACKS).is_some())
+    may_be_slip(name) && (OF_SETBACKS.contains(&name) || misspelt(name, &OF_SETBACKS).is_some())
 }
 
 /// Refuses the columns of a table that seem meant for `setback_m`, or for what a table cannot say.
@@ -59,10 +54,16 @@ const fn letters(name: &[u8]) -> u32 {
     all
 }
 
-/// Whether at most two letters of the long names are missing, or one of the short: each takes an edit.
+/// Whether a name is so long, and lacks so few letters of ours, that two edits of a long name or one of the short could
+/// make it: lengths and letters are far quicker to tell than edits.
 fn may_be_slip(name: &str) -> bool {
     let here = letters(name.as_bytes());
-    (LONG_LETTERS & !here).count_ones() <= 2 || (SHORT_LETTERS & !here).count_ones() <= 1
+    match name.len() {
+        _ if !name.is_ascii() => true,
+        4..=6 => (SHORT_LETTERS & !here).count_ones() <= 1,
+        7..=12 => (LONG_LETTERS & !here).count_ones() <= 2,
+        _ => false,
+    }
 }
 
 /// Setbacks by role as a file gives them, m.
