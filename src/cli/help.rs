@@ -68,9 +68,14 @@ options must be given again, since the proof is for the site they made.";
 pub const SWEEP: &str = r#"LOTS, told apart by how it begins; each lot is a Polygon or MultiPolygon:
   GeoJSON FeatureCollection   streamed; `id` of the feature or among its properties
   GeoJSON text sequence       RFC 8142
-  CSV                         with a heading; columns `wkt` and perhaps `id`; commas, semicolons or tabs
---setback applies to every lot line of every lot. Setbacks and roles among a feature's properties are not read, so
---front, --side and --rear are refused: place such a lot by itself.
+  CSV                         with a heading; columns `wkt` and perhaps `id` and `setback_m`; commas, semicolons or
+                              tabs
+Setbacks are those of `place`: a feature's properties `setback_m`, `setbacks_m` or `roles`, with "setbacks" by role
+beside the features, which must stand before them; a table has `setback_m` only. --front, --side and --rear go before
+--setback, and both before the file. A lot that says nothing has 0, and so has a role that nothing gives a setback; how
+many lots have such roles, and whether --front, --side or --rear found no roles at all, is noted at the end. Other
+properties and members beside the features are passed over, rules and yards too; a feature whose `use` is not lot is a
+bad lot. For keep-clear areas and rules, place the lot by itself.
 
 One row per lot, in the order of the file, with the members or columns
   id          the file's own, or the lot's position from 1

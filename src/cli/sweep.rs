@@ -15,7 +15,8 @@ use super::progress::{Counted, bar};
 use super::{Exit, files};
 use crate::io::lots::Lots;
 use crate::io::rows::{CsvRows, JsonLines, Row};
-use crate::sweep::{Feed, MAX_PIECES, Plan, SweepError, Tally, run as run_sweep};
+use crate::io::site_json;
+use crate::sweep::{Feed, MAX_PIECES, Plan, Seen, SweepError, Tally, run as run_sweep};
 
 /// Bytes read from a file at a time.
 const READ_BYTES: usize = 1 << 18;
@@ -25,7 +26,8 @@ const WRITE_BYTES: usize = 1 << 14;
 /// Sweeps the file.
 pub fn run(options: &Sweep) -> Result<Exit, Failure> {
     let cancel = AtomicBool::new(false);
-    let plan = plan(options, &cancel)?;
+    let seen = Seen::default();
+    let plan = plan(options, &cancel, &seen)?;
     let bad = |problem: String| Failure::input(&options.lots, vec![problem]);
     let cannot = |e: io::Error| bad(format!("the file cannot be read: {e}"));
     let file = File::open(&options.lots).map_err(cannot)?;
@@ -56,28 +58,30 @@ pub fn run(options: &Sweep) -> Result<Exit, Failure> {
         Ok(())
     });
     bar.finish_and_clear();
-    finish(&options.lots, end, writer)
+    let tally = match finish(end, writer)? {
+        Some(tally) => tally,
+        // Whoever read has had enough.
+        None => return Ok(Exit::Done),
+    };
+    let mut said = summary(&tally);
+    for note in notes(&plan.options, &seen) {
+        said += &format!("\nnote: {note}");
+    }
+    // Where stderr is closed there is nobody to tell.
+    let _ = writeln!(io::stderr(), "{said}");
+    match tally.broken_off {
+        Some(problem) => Err(Failure::input(&options.lots, vec![problem.to_string()])),
+        None => Ok(Exit::Done),
+    }
 }
 
-fn plan<'a>(options: &Sweep, cancel: &'a AtomicBool) -> Result<Plan<'a>, Failure> {
-    let read = options.reading.site_options()?;
-    let by_role = [
-        ("--front", read.front_m),
-        ("--side", read.side_m),
-        ("--rear", read.rear_m),
-    ];
-    if let Some((option, _)) = by_role.iter().find(|(_, setback_m)| setback_m.is_some()) {
-        return Err(Failure::usage(format!(
-            "{option}: the lots of a sweep have no roles; give --setback, or place the lot by itself"
-        )));
-    }
+fn plan<'a>(options: &Sweep, cancel: &'a AtomicBool, seen: &'a Seen) -> Result<Plan<'a>, Failure> {
     let max_pieces = options.max_pieces.map(usize::try_from);
     Ok(Plan {
-        coordinates: read.coordinates,
-        reading: read.reading.unwrap_or_default(),
-        setback_m: read.setback_m.unwrap_or(0.0),
+        options: options.reading.site_options()?,
         max_pieces: max_pieces.map_or(MAX_PIECES, |n| n.unwrap_or(usize::MAX)),
         cancel,
+        seen,
     })
 }
 
@@ -86,28 +90,45 @@ fn n_threads(options: &Sweep) -> usize {
     asked.unwrap_or_else(|| available_parallelism().map_or(1, usize::from))
 }
 
-/// Says how it came out, and whether that is a failure.
-fn finish(lots: &Path, end: Result<Tally, SweepError>, writer: Writer) -> Result<Exit, Failure> {
+/// Writes what is left; `None` when nobody reads it any more.
+fn finish(end: Result<Tally, SweepError>, writer: Writer) -> Result<Option<Tally>, Failure> {
     let tally = match end {
         Ok(tally) => tally,
-        // Whoever read has had enough.
-        Err(SweepError::Write(e)) if e.kind() == io::ErrorKind::BrokenPipe => {
-            return Ok(Exit::Done);
-        }
+        Err(SweepError::Write(e)) if e.kind() == io::ErrorKind::BrokenPipe => return Ok(None),
         Err(SweepError::Write(e)) => return Err(Failure::writing("a row", e)),
         Err(e) => return Err(Failure::other(&e.into())),
     };
     match writer.finish() {
-        Err(e) if e.kind() == io::ErrorKind::BrokenPipe => return Ok(Exit::Done),
-        Err(e) => return Err(Failure::writing("the last rows", e)),
-        Ok(()) => {}
+        Err(e) if e.kind() == io::ErrorKind::BrokenPipe => Ok(None),
+        Err(e) => Err(Failure::writing("the last rows", e)),
+        Ok(()) => Ok(Some(tally)),
     }
-    // Where stderr is closed there is nobody to tell.
-    let _ = writeln!(io::stderr(), "{}", summary(&tally));
-    match tally.broken_off {
-        Some(problem) => Err(Failure::input(lots, vec![problem.to_string()])),
-        None => Ok(Exit::Done),
+}
+
+/// What a planner should know of the setbacks of the whole sweep.
+fn notes(options: &site_json::Options, seen: &Seen) -> Vec<String> {
+    let mut notes = Vec::new();
+    let by_role = [
+        ("--front", options.front_m),
+        ("--side", options.side_m),
+        ("--rear", options.rear_m),
+    ];
+    let given = by_role.iter().filter(|(_, setback_m)| setback_m.is_some());
+    let given: Vec<&str> = given.map(|(option, _)| *option).collect();
+    if !given.is_empty() && seen.with_roles.load(Ordering::Relaxed) == 0 {
+        notes.push(format!(
+            "no lot that could be read has roles, so {} changed nothing",
+            given.join(", ")
+        ));
     }
+    let n_unset = seen.with_unset_roles.load(Ordering::Relaxed);
+    if n_unset > 0 {
+        let lots = if n_unset == 1 { "lot has" } else { "lots have" };
+        notes.push(format!(
+            "{n_unset} {lots} roles without a setback, which were taken as 0: give --setback, or setbacks in the file"
+        ));
+    }
+    notes
 }
 
 fn summary(tally: &Tally) -> String {

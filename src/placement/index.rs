@@ -144,7 +144,10 @@ impl<'a> RowIndex<'a> {
         match &self.tree {
             Tree::Few => {
                 let (distance2, i) = Segment::nearest_of(self.limits.region.boundary(), c);
-                Least { row: i as u32, radius: distance2.sqrt() }
+                Least {
+                    row: i as u32,
+                    radius: distance2.sqrt(),
+                }
             }
             Tree::Plain(tree) => self.least_plain(tree, c, likely),
             Tree::Weighted(tree) => self.least_weighted(tree, c, likely),

@@ -14,10 +14,9 @@ mod stages;
 pub use run::{Feed, SweepError, Tally, run};
 pub use stages::place_all;
 
-use std::sync::atomic::AtomicBool;
+use std::sync::atomic::{AtomicBool, AtomicU64};
 
-use crate::io::plane::Coordinates;
-use crate::site::YardReading;
+use crate::io::site_json::Options;
 
 /// Most pieces looked at for one lot. A tenth of what a single placement may use: about a quarter of a second, so that ten
 /// hostile lots hold up a county by seconds, while ordinary lots end within a few hundred pieces.
@@ -26,14 +25,22 @@ pub const MAX_PIECES: usize = 200_000;
 /// What is placed on every lot of a sweep.
 #[derive(Clone, Copy, Debug)]
 pub struct Plan<'a> {
-    pub coordinates: Coordinates,
-    pub reading: YardReading,
-    /// From every lot line, m.
-    pub setback_m: f64,
+    /// How lots are read, and which setbacks go before their own.
+    pub options: Options,
     /// Most pieces looked at for one lot.
     pub max_pieces: usize,
     /// Set from elsewhere to end the sweep early; lots not yet placed then have no row.
     pub cancel: &'a AtomicBool,
+    pub seen: &'a Seen,
+}
+
+/// What was seen of the lots' own setbacks, counted while they are read.
+#[derive(Debug, Default)]
+pub struct Seen {
+    /// Lots with roles.
+    pub with_roles: AtomicU64,
+    /// Of those, lots with a role that nothing gives a setback, taken as 0.
+    pub with_unset_roles: AtomicU64,
 }
 
 /// The words a row's status can be.

@@ -205,7 +205,8 @@ mod tests {
     use super::*;
     use crate::io::lots::Lots;
     use crate::io::plane::Coordinates;
-    use crate::site::YardReading;
+    use crate::io::site_json::Options;
+    use crate::sweep::Seen;
     use crate::units::LengthUnit;
     use std::sync::atomic::AtomicBool;
 
@@ -228,12 +229,15 @@ mod tests {
     ) -> Result<Tally, SweepError> {
         let cancel = AtomicBool::new(false);
         let bytes_read = AtomicU64::new(0);
+        let seen = Seen::default();
         let plan = Plan {
-            coordinates: Coordinates::Plane(LengthUnit::Metre),
-            reading: YardReading::Parallel,
-            setback_m: 0.0,
+            options: Options {
+                coordinates: Coordinates::Plane(LengthUnit::Metre),
+                ..Options::default()
+            },
             max_pieces: super::super::MAX_PIECES,
             cancel: &cancel,
+            seen: &seen,
         };
         let lots = Lots::open(table.as_bytes(), "lots").expect("a table");
         let feed = Feed {

@@ -14,7 +14,7 @@ use serde_json::Value;
 use super::{Plan, status};
 use crate::geom::validate::{Problem, validate};
 use crate::geom::{Area, Point};
-use crate::io::lots::{LotProblem, LotRecord, LotText};
+use crate::io::lots::{LotProblem, LotRecord, LotText, Setbacks};
 use crate::io::plane::{Plane, Snapped};
 use crate::io::rows::Row;
 use crate::limits::Limits;
@@ -30,6 +30,8 @@ struct Ready {
     id: Value,
     plane: Plane,
     area: Area,
+    /// For each segment, where the lot says its own.
+    boundary: Option<Vec<Boundary>>,
 }
 
 /// A lot that goes no further, and why.
@@ -50,7 +52,7 @@ type Staged<T> = Result<T, Ended>;
 
 /// Places on all lots of a handful; one row for each, in order. When cancelled, rows end at the first lot not placed.
 pub fn place_all(lots: &[Result<LotText, LotProblem>], plan: &Plan) -> Vec<Row> {
-    let parsed: Vec<Staged<LotRecord>> = lots.iter().map(parsed).collect();
+    let parsed: Vec<Staged<LotRecord>> = lots.iter().map(|lot| parsed(lot, plan)).collect();
     let ready: Vec<Staged<Ready>> = parsed
         .into_iter()
         .map(|lot| lot.and_then(|record| validated(record, plan)))
@@ -107,32 +109,55 @@ fn said_in(panic: &(dyn Any + Send)) -> &str {
         .unwrap_or("no reason was given")
 }
 
-fn parsed(lot: &Result<LotText, LotProblem>) -> Staged<LotRecord> {
+fn parsed(lot: &Result<LotText, LotProblem>, plan: &Plan) -> Staged<LotRecord> {
     let text = match lot {
         Ok(text) => text,
         Err(problem) => return Err(bad(problem.id.clone(), problem.to_string())),
     };
-    let record = guarded(|| text.position.into(), || text.parse())?;
-    record.map_err(|problem| bad(problem.id.clone(), problem.to_string()))
+    let record = guarded(|| text.position.into(), || text.parse(&plan.options))?;
+    let record = record.map_err(|problem| bad(problem.id.clone(), problem.to_string()))?;
+    if let Some(setbacks) = &record.setbacks {
+        count(setbacks, plan);
+    }
+    Ok(record)
+}
+
+fn count(setbacks: &Setbacks, plan: &Plan) {
+    if setbacks.roles.is_some() {
+        plan.seen.with_roles.fetch_add(1, Ordering::Relaxed);
+    }
+    if !setbacks.unset.is_empty() {
+        plan.seen.with_unset_roles.fetch_add(1, Ordering::Relaxed);
+    }
 }
 
 fn validated(record: LotRecord, plan: &Plan) -> Staged<Ready> {
-    let LotRecord { id, polygons, .. } = record;
-    let ready = guarded(
-        || id.clone(),
-        || {
-            let plane = Plane::around(&polygons, plan.coordinates).map_err(|e| e.to_string())?;
-            let in_site = plane
-                .to_site_polygons(&polygons)
-                .map_err(|e| e.to_string())?;
-            let valid = validate(&in_site, &|_, _| true).map_err(|p| sentences(&p, &plane))?;
-            Ok((plane, valid.area))
-        },
-    )?;
-    match ready {
-        Ok((plane, area)) => Ok(Ready { id, plane, area }),
-        Err(problem) => Err(bad(id, problem)),
-    }
+    let id = record.id.clone();
+    let ready = guarded(|| id.clone(), || ready(record, plan))?;
+    ready.map_err(|problem| bad(id, problem))
+}
+
+fn ready(record: LotRecord, plan: &Plan) -> Result<Ready, String> {
+    let polygons = record.polygons;
+    let coordinates = plan.options.coordinates;
+    let plane = Plane::around(&polygons, coordinates).map_err(|e| e.to_string())?;
+    let in_site = plane.to_site_polygons(&polygons);
+    let in_site = in_site.map_err(|e| e.to_string())?;
+    let valid = match &record.setbacks {
+        None => validate(&in_site, &|_, _| true),
+        Some(setbacks) => validate(&in_site, &|a, b| setbacks.at(a) == setbacks.at(b)),
+    };
+    let valid = valid.map_err(|p| sentences(&p, &plane))?;
+    let boundary = record.setbacks.map(|setbacks| {
+        let segments = valid.sources.iter();
+        segments.map(|&id| setbacks.at(id)).collect()
+    });
+    Ok(Ready {
+        id: record.id,
+        plane,
+        area: valid.area,
+        boundary,
+    })
 }
 
 fn sentences(problems: &[Problem], plane: &Plane) -> String {
@@ -147,7 +172,12 @@ fn sentences(problems: &[Problem], plane: &Plane) -> String {
 
 /// The row of a valid lot; `None` when the sweep was cancelled meanwhile.
 fn placed(lot: Ready, plan: &Plan) -> Option<Row> {
-    let Ready { id, plane, area } = lot;
+    let Ready {
+        id,
+        plane,
+        area,
+        boundary,
+    } = lot;
     let snapped: Cell<Option<Snapped>> = Cell::new(None);
     let snap = |p: Point| {
         let s = plane.snap(p);
@@ -155,7 +185,7 @@ fn placed(lot: Ready, plan: &Plan) -> Option<Row> {
         s.site
     };
     let begun = Instant::now();
-    let placement = guarded(|| id.clone(), || largest_on(area, plan, &snap));
+    let placement = guarded(|| id.clone(), || largest_on((area, boundary), plan, &snap));
     let solve_us = begun.elapsed().as_nanos() as f64 / 1000.0;
     match placement {
         Err(ended) => Some(ended.into()),
@@ -166,13 +196,13 @@ fn placed(lot: Ready, plan: &Plan) -> Option<Row> {
 
 /// From the validated area to the verified placement: what `solve_us` measures.
 fn largest_on(
-    area: Area,
+    lot: (Area, Option<Vec<Boundary>>),
     plan: &Plan,
     snap: &dyn Fn(Point) -> Point,
 ) -> Result<Placement, PlaceError> {
     let site = Site {
-        reading: plan.reading,
-        ..Site::of_lot(lot_of(area, plan.setback_m)?)
+        reading: plan.options.reading.unwrap_or_default(),
+        ..Site::of_lot(lot_of(lot, plan.options.setback_m)?)
     };
     let limits = Limits::new(&site)?;
     let effort = Effort {
@@ -183,15 +213,18 @@ fn largest_on(
     largest(&limits, &site, effort, snap)
 }
 
-fn lot_of(area: Area, setback_m: f64) -> Result<Lot, SiteError> {
-    if setback_m == 0.0 {
-        return Ok(Lot::plain(area));
-    }
-    let boundary = Boundary {
-        role: Role::Other,
-        setback_m,
+fn lot_of(
+    (area, boundary): (Area, Option<Vec<Boundary>>),
+    setback_m: Option<f64>,
+) -> Result<Lot, SiteError> {
+    let boundary = match (boundary, setback_m) {
+        (Some(boundary), _) => boundary,
+        (None, None | Some(0.0)) => return Ok(Lot::plain(area)),
+        (None, Some(setback_m)) => {
+            let role = Role::Other;
+            vec![Boundary { role, setback_m }; area.n_segments()]
+        }
     };
-    let boundary = vec![boundary; area.n_segments()];
     Lot::new(area, boundary)
 }
 
@@ -229,18 +262,29 @@ mod tests {
     use super::*;
     use crate::io::lots::Lots;
     use crate::io::plane::Coordinates;
-    use crate::site::YardReading;
+    use crate::io::site_json::Options;
+    use crate::sweep::Seen;
     use crate::units::LengthUnit;
     use std::sync::atomic::AtomicBool;
 
-    fn plan(cancel: &AtomicBool) -> Plan<'_> {
+    fn plan<'a>(cancel: &'a AtomicBool, seen: &'a Seen) -> Plan<'a> {
         Plan {
-            coordinates: Coordinates::Plane(LengthUnit::Metre),
-            reading: YardReading::Parallel,
-            setback_m: 0.0,
+            options: Options {
+                coordinates: Coordinates::Plane(LengthUnit::Metre),
+                ..Options::default()
+            },
             max_pieces: super::super::MAX_PIECES,
             cancel,
+            seen,
         }
+    }
+
+    fn with_setback(plan: Plan<'_>, setback_m: f64) -> Plan<'_> {
+        let options = Options {
+            setback_m: Some(setback_m),
+            ..plan.options
+        };
+        Plan { options, ..plan }
     }
 
     fn rows(table: &str, plan: &Plan) -> Vec<Row> {
@@ -259,7 +303,8 @@ mod tests {
     #[test]
     fn every_lot_has_a_row_in_order() {
         let cancel = AtomicBool::new(false);
-        let rows = rows(TABLE, &plan(&cancel));
+        let seen = Seen::default();
+        let rows = rows(TABLE, &plan(&cancel, &seen));
         let brief: Vec<_> = rows.iter().map(|r| (r.id.as_str(), r.status)).collect();
         assert_eq!(
             brief,
@@ -287,27 +332,22 @@ mod tests {
     #[test]
     fn setbacks_apply_to_every_lot_line() {
         let cancel = AtomicBool::new(false);
-        let plan = Plan {
-            setback_m: 2.0,
-            ..plan(&cancel)
-        };
+        let seen = Seen::default();
+        let plan = with_setback(plan(&cancel, &seen), 2.0);
         let rows = rows(TABLE, &plan);
         let diameter_m = rows[0].diameter_m.expect("a circle");
         assert!((diameter_m - 6.0).abs() < 1e-9, "{diameter_m}");
-        let wide = Plan {
-            setback_m: 6.0,
-            ..plan
-        };
-        let rows = self::rows(TABLE, &wide);
+        let rows = self::rows(TABLE, &with_setback(plan, 6.0));
         assert_eq!((rows[0].status, rows[0].diameter_m), ("no-room", None));
     }
 
     #[test]
     fn a_cap_is_reported_with_what_was_found() {
         let cancel = AtomicBool::new(false);
+        let seen = Seen::default();
         let plan = Plan {
             max_pieces: 1,
-            ..plan(&cancel)
+            ..plan(&cancel, &seen)
         };
         let bent = "wkt\n\"POLYGON((0 0,20 1,21 10,10 11,9 20,-1 19,0 0))\"\n";
         let row = &rows(bent, &plan)[0];
@@ -318,7 +358,8 @@ mod tests {
     #[test]
     fn a_cancelled_sweep_ends_at_the_first_lot_not_placed() {
         let cancel = AtomicBool::new(true);
-        assert_eq!(rows(TABLE, &plan(&cancel)).len(), 0);
+        let seen = Seen::default();
+        assert_eq!(rows(TABLE, &plan(&cancel, &seen)).len(), 0);
     }
 
     #[test]

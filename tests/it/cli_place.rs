@@ -316,7 +316,6 @@ fn usage_is_refused_with_exit_code_2() {
     check(&["place", "x", "--unit", "yd"], "m, ft, us-ft");
     check(&["place", "x", "--max-pieces", "0"], "--max-pieces");
     check(&["sweep", "x", "--threads", "0"], "--threads");
-    check(&["sweep", "x", "--front", "3"], "have no roles");
     let end = run(&["place", "x", "--\u{1b}[31m\u{7}"]);
     assert_eq!(end.code, Some(2));
     assert!(!end.stderr.contains(['\u{1b}', '\u{7}']), "{end:?}");

@@ -11,4 +11,5 @@ mod reference;
 mod seeded;
 mod support;
 mod sweep;
+mod sweep_setbacks;
 mod tidy;

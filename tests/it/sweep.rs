@@ -293,3 +293,45 @@ fn a_reader_that_has_had_enough_ends_the_sweep_quietly() {
         );
     }
 }
+
+#[test]
+fn marks_line_ends_and_open_quotations_of_a_table() {
+    let dir = Dir::new("marks_line_ends_and_open_quotations_of_a_table");
+    let lot = square(10.0);
+    let text = format!("\u{feff}id,wkt\r\na,\"{lot}\"\r\n\r\n\"b\r\n\",\"{lot}\"");
+    let end = run(&["sweep", &dir.file("lots.csv", text), "--plane"]);
+    check_done(&end);
+    assert_eq!(
+        brief(&rows(&end.stdout)),
+        [r#""a" fits 10.000"#, r#""b\r\n" fits 10.000"#]
+    );
+    // All after the mark is one row.
+    let text = format!("id;wkt\na;{lot}\nb;\"{lot}\nc;{lot}\n");
+    let end = run(&["sweep", &dir.file("open.csv", text), "--plane"]);
+    assert_eq!(end.code, Some(3), "{end:?}");
+    assert_eq!(
+        brief(&rows(&end.stdout)),
+        [r#""a" fits 10.000"#, "2 invalid-lot"]
+    );
+    assert!(
+        end.stderr
+            .contains("row that begins in line 3: a quotation mark is opened"),
+        "{end:?}"
+    );
+    let long = format!("id;wkt\na;{lot}\n\"{}", "x\n".repeat(65 << 20));
+    let end = run(&["sweep", &dir.file("long.csv", long), "--plane"]);
+    assert_eq!(end.code, Some(3), "{end:?}");
+    assert!(end.stderr.contains("longer than 128 MB"), "{end:?}");
+}
+
+#[cfg(target_os = "linux")]
+#[test]
+fn rows_that_cannot_be_written_are_an_error() {
+    let dir = Dir::new("rows_that_cannot_be_written_are_an_error");
+    let path = dir.file("lots.csv", format!("wkt\n\"{}\"\n", square(10.0)));
+    for option in ["--csv", "--json-lines"] {
+        let end = run(&["sweep", &path, "--plane", option, "/dev/full"]);
+        assert_eq!(end.code, Some(1), "{end:?}");
+        assert!(end.stderr.contains("cannot be written"), "{end:?}");
+    }
+}

@@ -1,10 +1,15 @@
 //! One lot from the text of a GeoJSON Feature, Polygon or MultiPolygon.
 
-use geojson::Geometry;
-use serde::Deserialize;
-use serde_json::Value;
+use std::fmt;
 
+use geojson::Geometry;
+use serde::de::{Error, IgnoredAny, MapAccess, Visitor};
+use serde::{Deserialize, Deserializer};
+use serde_json::{Map, Value};
+
+use super::{Content, briefly};
 use crate::geom::validate::RawPolygon;
+use crate::io::site_json::setbacks::{ByRole, is_near};
 use crate::io::{geometry, visible};
 
 #[derive(Deserialize)]
@@ -13,12 +18,102 @@ struct Feature {
     id: Option<Value>,
     geometry: Option<Geometry>,
     properties: Option<Properties>,
+    setbacks: Option<Value>,
+    // Where they stand wrongly and would be passed over unseen.
+    r#use: Option<IgnoredAny>,
+    setback_m: Option<IgnoredAny>,
+    setbacks_m: Option<IgnoredAny>,
+    roles: Option<IgnoredAny>,
 }
 
-#[derive(Deserialize)]
+impl Feature {
+    fn misplaced(&self) -> Option<String> {
+        let beside = [
+            ("use", &self.r#use),
+            ("setback_m", &self.setback_m),
+            ("setbacks_m", &self.setbacks_m),
+            ("roles", &self.roles),
+        ];
+        let (name, _) = beside.iter().find(|(_, value)| value.is_some())?;
+        Some(format!(
+            "{name} stands beside properties: move it into them"
+        ))
+    }
+}
+
+/// The properties that are read; others are passed over without making anything of them.
+#[derive(Default)]
 struct Properties {
     id: Option<Value>,
     r#use: Option<Value>,
+    /// Those about setbacks, and what may be meant for one.
+    own: Map<String, Value>,
+}
+
+impl<'de> Deserialize<'de> for Properties {
+    fn deserialize<D: Deserializer<'de>>(source: D) -> Result<Properties, D::Error> {
+        source.deserialize_map(PropertiesVisitor)
+    }
+}
+
+struct PropertiesVisitor;
+
+impl<'de> Visitor<'de> for PropertiesVisitor {
+    type Value = Properties;
+
+    fn expecting(&self, f: &mut fmt::Formatter) -> fmt::Result {
+        f.write_str("an object of properties")
+    }
+
+    fn visit_map<A: MapAccess<'de>>(self, mut map: A) -> Result<Properties, A::Error> {
+        let mut properties = Properties::default();
+        while let Some(name) = map.next_key::<Name>()? {
+            match name {
+                Name::Id => properties.id = map.next_value()?,
+                Name::Use => properties.r#use = map.next_value()?,
+                Name::Own(name) => {
+                    properties.own.insert(name, map.next_value()?);
+                }
+                Name::Foreign => {
+                    map.next_value::<IgnoredAny>()?;
+                }
+            }
+        }
+        Ok(properties)
+    }
+}
+
+/// The name of a property, kept only where it may be ours.
+enum Name {
+    Id,
+    Use,
+    Own(String),
+    Foreign,
+}
+
+impl<'de> Deserialize<'de> for Name {
+    fn deserialize<D: Deserializer<'de>>(source: D) -> Result<Name, D::Error> {
+        source.deserialize_str(NameVisitor)
+    }
+}
+
+struct NameVisitor;
+
+impl Visitor<'_> for NameVisitor {
+    type Value = Name;
+
+    fn expecting(&self, f: &mut fmt::Formatter) -> fmt::Result {
+        f.write_str("a name")
+    }
+
+    fn visit_str<E: Error>(self, name: &str) -> Result<Name, E> {
+        Ok(match name {
+            "id" => Name::Id,
+            "use" => Name::Use,
+            _ if is_near(name) => Name::Own(name.to_owned()),
+            _ => Name::Foreign,
+        })
+    }
 }
 
 /// What can still be said of a feature that cannot be read as one.
@@ -28,31 +123,53 @@ struct Label {
     properties: Option<Value>,
 }
 
-/// The lot's own id, if it has one, and its polygons or what is wrong with them.
-pub fn parse(text: &[u8]) -> (Option<Value>, Result<Vec<RawPolygon>, String>) {
-    let feature: Feature = match serde_json::from_slice(text) {
+/// The lot's own id, if it has one, and what it holds or what is wrong with it.
+pub fn parse(text: &[u8]) -> (Option<Value>, Result<Content, String>) {
+    let mut feature: Feature = match serde_json::from_slice(text) {
         Ok(feature) => feature,
         Err(e) => return (label(text), Err(sentence(text, &e))),
     };
-    let (inner_id, kind_of_use) = match feature.properties {
-        Some(p) => (p.id, p.r#use),
-        None => (None, None),
-    };
-    let id = usable_id(feature.id).or(usable_id(inner_id));
-    let polygons = match (feature.r#type.as_deref(), kind_of_use, &feature.geometry) {
-        (Some("Feature"), Some(other), _) if other != "lot" => {
+    let properties = feature.properties.take().unwrap_or_default();
+    let id = usable_id(feature.id.take()).or(usable_id(properties.id));
+    let polygons = match (feature.r#type.as_deref(), properties.r#use) {
+        (Some("Feature"), Some(other)) if other != "lot" => {
             Err(format!("not a lot: its use is {other}"))
         }
-        (Some("Feature"), _, None) => Err("the feature has no geometry".to_owned()),
-        (Some("Feature"), _, Some(geometry)) => geometry::polygons(&geometry.value),
-        (Some("Polygon" | "MultiPolygon"), ..) => bare(text),
-        (Some(other), ..) => Err(format!(
+        (Some("Feature"), _) => match &feature.geometry {
+            None => Err("the feature has no geometry".to_owned()),
+            Some(geometry) => geometry::polygons(&geometry.value),
+        },
+        (Some("Polygon" | "MultiPolygon"), _) => bare(text),
+        (Some(other), _) => Err(format!(
             "the type is \"{}\", not Feature, Polygon or MultiPolygon",
             visible(other)
         )),
-        (None, ..) => Err("the member type is missing: this is no GeoJSON".to_owned()),
+        (None, _) => Err("the member type is missing: this is no GeoJSON".to_owned()),
     };
-    (id, polygons)
+    let own = properties.own;
+    let content = polygons.and_then(|polygons| {
+        let by_role = by_role(&feature)?;
+        Ok(Content {
+            polygons,
+            own,
+            by_role,
+        })
+    });
+    (id, content)
+}
+
+/// The setbacks by role of a feature that stands alone.
+fn by_role(feature: &Feature) -> Result<Option<ByRole>, String> {
+    if let Some(problem) = feature.misplaced() {
+        return Err(problem);
+    }
+    let mut problems = Vec::new();
+    let by_role = feature.setbacks.as_ref();
+    let by_role = by_role.map(|value| ByRole::read(Some(value), &mut problems));
+    match problems.as_slice() {
+        [] => Ok(by_role),
+        problems => Err(briefly(problems)),
+    }
 }
 
 fn bare(text: &[u8]) -> Result<Vec<RawPolygon>, String> {

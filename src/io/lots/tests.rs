@@ -9,7 +9,7 @@ fn read(text: &[u8]) -> Vec<Result<LotRecord, LotProblem>> {
     let reader = BufReader::with_capacity(16, text);
     Lots::open(reader, "lots")
         .expect("a file of lots")
-        .records()
+        .records(Options::default())
         .collect()
 }
 
@@ -216,7 +216,7 @@ proptest! {
             bytes[at] = byte;
         }
         if let Ok(lots) = Lots::open(bytes.as_slice(), "lots") {
-            prop_assert!(lots.records().count() <= bytes.len());
+            prop_assert!(lots.records(Options::default()).count() <= bytes.len());
         }
     }
 }

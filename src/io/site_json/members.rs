@@ -62,7 +62,7 @@ fn edits(a: &str, b: &str) -> usize {
 
 /// One object of the file while it is read.
 pub struct Members<'a, 'p> {
-    /// How the object is called in messages.
+    /// How the object is called in messages; empty where whoever shows them says it.
     pub place: String,
     map: Option<&'a Map<String, Value>>,
     problems: &'p mut Vec<String>,
@@ -96,7 +96,10 @@ impl<'a, 'p> Members<'a, 'p> {
     }
 
     pub fn problem(&mut self, what: impl std::fmt::Display) {
-        self.problems.push(format!("{}: {what}", self.place));
+        self.problems.push(match self.place.as_str() {
+            "" => what.to_string(),
+            place => format!("{place}: {what}"),
+        });
     }
 
     /// The member, absent where it is null.

@@ -23,6 +23,7 @@ mod envelope;
 mod lot;
 mod members;
 mod rules;
+pub(super) mod setbacks;
 mod things;
 
 use crate::geom::Point;
@@ -102,7 +103,7 @@ fn read_all(bytes: &[u8], options: &Options) -> Result<Imported, SiteJsonError> 
 
     // 1. What stands by itself.
     let structure = rules::structure(&draft.top, &mut problems);
-    let by_role = lot::setbacks_by_role(&draft.top, &mut problems);
+    let by_role = setbacks::ByRole::read(draft.top.setbacks.as_ref(), &mut problems);
     let reading = rules::reading(&draft.top, &mut problems);
     let plan = lot::plan(&draft, &by_role, options, &mut problems, &mut notes);
     let Some(plan) = plan else {
