@@ -4,7 +4,7 @@
 //! the tangents is an inner approximation, and its answer is never worse. Repeating it is Newton's method on the rows
 //! that bind.
 
-use super::index::RowIndex;
+use super::index::{Least, RowIndex};
 use super::piece::{Triangle, Weighted};
 use crate::geom::{Point, Vec2};
 use crate::lp::game::{Game, GameRow};
@@ -50,7 +50,7 @@ impl SettledDisc {
     }
 }
 
-/// Climbs from `start`, which lies in the region; `size` is a radius that steps are measured by.
+/// Climbs from `start`, which lies in the region and at which `least` holds; `size` is a radius that steps are measured by.
 ///
 /// What comes back: a centre that allows at least as much as the start, with the rows whose tangents carry the last step.
 /// Method: successive linear programs with tangents, rows found by the index; a step that leaves the region is taken again
@@ -59,20 +59,30 @@ impl SettledDisc {
 pub(super) fn climb(
     index: &RowIndex,
     game: &mut Game,
-    start: Point,
+    (start, least): (Point, Least),
     size: f64,
-    rows: &[u32],
+    likely: &[u32],
 ) -> Spot {
-    let radius = index.least(start, rows.iter().copied()).radius;
     let mut spot = Spot {
         centre: start,
-        radius,
-        carrying: [(0, 0.0); 3],
+        radius: least.radius,
+        carrying: [(least.row, 0.0); 3],
     };
+    let mut here = least.row;
     let mut reach = FIRST_REACH;
     for _ in 0..MAX_ROUNDS {
         let scale = if spot.radius > 0.0 { spot.radius } else { size };
-        let step = step(index, game, &spot, rows, reach * scale);
+        let carrying = spot
+            .carrying
+            .iter()
+            .filter(|(_, y)| *y > 0.0)
+            .map(|&(row, _)| row);
+        let known = std::iter::once(here)
+            .chain(carrying)
+            .chain(likely.iter().copied());
+        let Some((step, there)) = step(index, game, spot.centre, known, reach * scale) else {
+            break;
+        };
         let gain = step.radius - spot.radius;
         let is_far = step.centre.distance(spot.centre) >= spot.radius;
         if is_far && !index.is_in_region(step.centre) {
@@ -84,7 +94,7 @@ pub(super) fn climb(
         }
         spot.carrying = step.carrying;
         if gain > 0.0 {
-            (spot.centre, spot.radius) = (step.centre, step.radius);
+            (spot.centre, spot.radius, here) = (step.centre, step.radius, there);
         }
         if gain <= LAST_GAIN * spot.radius {
             break;
@@ -93,51 +103,41 @@ pub(super) fn climb(
     spot
 }
 
-/// The best centre by the tangents at the spot, within a triangle of inradius `reach_m` about it.
-fn step(index: &RowIndex, game: &mut Game, spot: &Spot, likely: &[u32], reach_m: f64) -> Spot {
+/// The best centre by the tangents at `from`, within a triangle of inradius `reach_m` about it, and the row that allows
+/// least there; `known` rows are in from the start.
+fn step(
+    index: &RowIndex,
+    game: &mut Game,
+    from: Point,
+    mut known: impl Iterator<Item = u32>,
+    reach_m: f64,
+) -> Option<(Spot, u32)> {
     let domain = [(0.0, 2.0), (-3f64.sqrt(), -1.0), (3f64.sqrt(), -1.0)]
         .map(|(x, y)| Vec2::new(x, y) * reach_m);
-    let tangent = |row: u32| tangent(index, row, spot.centre, &domain);
-    let here = index.least(spot.centre, likely.iter().copied()).row;
-    let carrying = spot
-        .carrying
-        .iter()
-        .filter(|(_, y)| *y > 0.0)
-        .map(|&(row, _)| row);
-    let mut known = std::iter::once(here)
-        .chain(carrying)
-        .chain(likely.iter().copied())
-        .filter_map(tangent);
-    let Some(first) = known.by_ref().find(|row| row.w > 0.0) else {
-        return *spot;
+    let tangent = |row: u32| tangent(index, row, from, &domain);
+    // Adds a row that is not in the game yet, while there is room; says whether it did.
+    let add = |game: &mut Game, row: u32| {
+        !game.has(row) && tangent(row).is_some_and(|row| game.push(row))
     };
-    game.start(first);
-    known.for_each(|row| add(game, row));
+    game.start(known.by_ref().filter_map(tangent).find(|row| row.w > 0.0)?);
+    for row in known {
+        add(game, row);
+    }
     loop {
         let value = game.solve();
         let offset = [0, 1, 2].map(|k| domain[k] * value.point[k]);
-        let centre = spot.centre + offset[0] + offset[1] + offset[2];
+        let centre = from + offset[0] + offset[1] + offset[2];
         let least = index.least(centre, game.rows().iter().map(|row| row.tag));
-        let n_rows = game.rows().len();
-        if least.radius < value.bound {
-            tangent(least.row)
-                .into_iter()
-                .for_each(|row| add(game, row));
+        if least.radius >= value.bound || !add(game, least.row) {
+            return Some((
+                Spot {
+                    centre,
+                    radius: least.radius,
+                    carrying: value.weights,
+                },
+                least.row,
+            ));
         }
-        if game.rows().len() == n_rows {
-            return Spot {
-                centre,
-                radius: least.radius,
-                carrying: value.weights,
-            };
-        }
-    }
-}
-
-/// Adds a row that is not in the game yet, while there is room.
-fn add(game: &mut Game, row: GameRow) {
-    if !game.has(row.tag) {
-        game.push(row);
     }
 }
 

@@ -9,7 +9,7 @@ use crate::geom::Point;
 use crate::lp::game::{Game, GameRow, Value};
 
 /// Rows a piece hands to its halves: enough to start them, few enough to copy.
-pub(super) const N_HANDED: usize = 4;
+pub(super) const N_HANDED: usize = 3;
 
 /// A triangle, counter-clockwise or flat.
 pub(super) type Triangle = [Point; 3];

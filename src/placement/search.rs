@@ -364,7 +364,7 @@ impl<'a> Search<'a> {
         climb(
             self.index,
             &mut self.game,
-            looked.point,
+            (looked.point, looked.least),
             looked.bound,
             looked.handed.rows(),
         )

@@ -34,7 +34,7 @@ pub(super) fn other_spots(
         .filter(|&p| index.is_in_region(p))
         .map(|p| (p, index.least(p, std::iter::empty())))
         .filter(|(_, least)| least.radius > 0.0)
-        .map(|(p, least)| climb(index, &mut game, p, least.radius, &[least.row]))
+        .map(|(p, least)| climb(index, &mut game, (p, least), least.radius, &[]))
         .filter(|spot| settled_disc(index, spot).is_some() || free_direction(index, spot).is_some())
         .collect();
     found.sort_by(|a, b| b.radius.total_cmp(&a.radius));

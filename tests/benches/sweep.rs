@@ -9,8 +9,8 @@ use criterion::{Criterion, Throughput, criterion_group, criterion_main};
 use roundstead::io::lots::Lots;
 use roundstead::io::plane::Coordinates;
 use roundstead::io::rows::JsonLines;
-use roundstead::site::YardReading;
-use roundstead::sweep::{Feed, MAX_PIECES, Plan, Tally, run};
+use roundstead::io::site_json::Options;
+use roundstead::sweep::{Feed, MAX_PIECES, Plan, Seen, Tally, run};
 use roundstead::units::LengthUnit;
 
 #[path = "../it/seeded.rs"]
@@ -51,12 +51,17 @@ fn table() -> String {
 
 fn swept(table: &str, setback_m: f64) -> (Tally, Vec<u8>) {
     let cancel = AtomicBool::new(false);
-    let plan = Plan {
+    let options = Options {
         coordinates: Coordinates::Plane(LengthUnit::Metre),
-        reading: YardReading::Parallel,
-        setback_m,
+        setback_m: Some(setback_m),
+        ..Options::default()
+    };
+    let seen = Seen::default();
+    let plan = Plan {
+        options,
         max_pieces: MAX_PIECES,
         cancel: &cancel,
+        seen: &seen,
     };
     let feed = Feed {
         lots: Lots::open(table.as_bytes(), "the table").expect("it has a heading"),
