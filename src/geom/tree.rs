@@ -13,7 +13,7 @@ use super::{Bounds, Point};
 const FAN: usize = 4;
 
 /// Items of a node of the lowest level: a run short enough to be looked through without a branch.
-const RUN: usize = 8;
+const RUN: usize = 4;
 
 /// What a node knows of its items beside their box.
 pub trait Summary: Copy {

@@ -2,7 +2,7 @@
 
 use super::limit::things_of;
 use super::{Feature, Limit, Limits, LotRows, Measure, Origin, Otherwise, Region, Row, Thing};
-use crate::geom::{Point, Ring, Segment, pieces::convex_pieces, yard};
+use crate::geom::{Area, Point, Ring, Segment, pieces::convex_pieces, yard};
 use crate::site::{Shape, Site, SiteError, YardReading};
 
 /// Half-planes where they say the same as the yards: a convex lot whose setback lines meet at every corner, or, in the
@@ -74,10 +74,37 @@ pub(super) fn limits(site: &Site, lot_rows: LotRows) -> Result<Limits, SiteError
     } else {
         Vec::new()
     };
+    let n_plain = plain_limits.len();
     Ok(Limits {
         limits: builder.limits,
         listed: builder.rows,
+        n_plain,
         plain_limits,
+        region,
+        lot_rows,
+    })
+}
+
+/// A lot with no setbacks and nothing beside it.
+pub(super) fn bare_lot(lot: &Area) -> Result<Limits, SiteError> {
+    let region = Region::new(lot, &[])?;
+    let n = region.n_lot_segments();
+    let half_planes = || {
+        region
+            .boundary()
+            .iter()
+            .map(|&s| half_plane_row(s, 0.0, 0))
+            .collect()
+    };
+    let (lot_rows, listed, n_plain) = match lot.is_convex() {
+        true => (LotRows::HalfPlanes, half_planes(), 0),
+        false => (LotRows::Plain, Vec::new(), n),
+    };
+    Ok(Limits {
+        limits: Vec::new(),
+        listed,
+        n_plain,
+        plain_limits: Vec::new(),
         region,
         lot_rows,
     })

@@ -18,6 +18,7 @@ pub use row::{Otherwise, Row};
 
 use std::borrow::Cow;
 
+use crate::geom::Area;
 use crate::site::{Site, SiteError};
 
 /// Whether the lot's own rows are half-planes: they can be where the lot is convex and its setback lines meet at every
@@ -37,7 +38,8 @@ pub struct Limits {
     pub limits: Vec<Limit>,
     /// All rows, but for those of the lot where they are plain.
     listed: Vec<Row>,
-    /// The limit of each plain row.
+    n_plain: usize,
+    /// The limit of each plain row; empty for a bare lot, which has no limits to name.
     plain_limits: Vec<u32>,
     pub region: Region,
     pub lot_rows: LotRows,
@@ -53,16 +55,27 @@ impl Limits {
         Limits::with_lot_rows(site, build::suitable_lot_rows(site))
     }
 
+    /// The rows of a lot with nothing but its boundary, for a search that names no limits.
+    ///
+    /// # Errors
+    /// As [`Limits::new`].
+    pub fn of_bare_lot(lot: &Area) -> Result<Limits, SiteError> {
+        build::bare_lot(lot)
+    }
+
     pub fn n_rows(&self) -> usize {
-        self.plain_limits.len() + self.listed.len()
+        self.n_plain + self.listed.len()
     }
 
     /// Row `i`, which is below [`Limits::n_rows`].
     pub fn row(&self, i: usize) -> Cow<'_, Row> {
-        let n_plain = self.plain_limits.len();
+        let n_plain = self.n_plain;
         if i < n_plain {
             let feature = Feature::Segment(self.region.boundary()[i]);
-            Cow::Owned(Row::new(feature, 1.0, 0.0, self.plain_limits[i]))
+            {
+                let limit = self.plain_limits.get(i).copied().unwrap_or(0);
+                Cow::Owned(Row::new(feature, 1.0, 0.0, limit))
+            }
         } else {
             Cow::Borrowed(&self.listed[i - n_plain])
         }

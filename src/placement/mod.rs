@@ -26,11 +26,10 @@ pub use report::{BINDING_SPARE_M, LimitReport, Report, report};
 pub use search::Effort;
 pub use verify::{VerifyError, verified_radius};
 
-use crate::geom::Point;
+use crate::geom::{Area, Point};
 use crate::limits::Limits;
 use crate::site::{Site, SiteError};
 use index::RowIndex;
-use record::Record;
 use search::{End, Found, Search};
 
 /// How a placement came out.
@@ -91,21 +90,31 @@ pub fn largest(
     effort: Effort,
     snap: &dyn Fn(Point) -> Point,
 ) -> Result<Placement, PlaceError> {
-    let (found, _, index) = searched(limits, site, effort, false);
-    finished(&found, &index, snap)
+    largest_within(limits, site.lot.area(), effort, snap)
 }
 
-fn searched<'a>(
-    limits: &'a Limits,
-    site: &Site,
+/// The largest circle of a lot with nothing but its boundary: as [`largest`], without lot lines or limits that a report
+/// would name.
+///
+/// # Errors
+/// A circle that did not pass verification.
+pub fn largest_on_bare_lot(
+    lot: &Area,
     effort: Effort,
-    keep_record: bool,
-) -> (Found, Option<Record>, RowIndex<'a>) {
+    snap: &dyn Fn(Point) -> Point,
+) -> Result<Placement, PlaceError> {
+    largest_within(&Limits::of_bare_lot(lot)?, lot, effort, snap)
+}
+
+fn largest_within(
+    limits: &Limits,
+    lot: &Area,
+    effort: Effort,
+    snap: &dyn Fn(Point) -> Point,
+) -> Result<Placement, PlaceError> {
     let index = RowIndex::new(limits);
-    let roots = roots::roots(site.lot.area(), limits);
-    let record = keep_record.then(|| Record::new(roots.triangles.len()));
-    let (found, record) = Search::new(&index, effort, record).run(&roots);
-    (found, record, index)
+    let (found, _) = Search::new(&index, effort, None).run(&roots::roots(lot, limits));
+    finished(&found, &index, snap)
 }
 
 /// Turns what a search found into a verified placement.

@@ -69,6 +69,9 @@ const HOPELESS: f64 = 2.1;
 /// settles another room that is about as good.
 const NEAR_TIE: f64 = 0.98;
 
+/// Room for the pieces that a lot of a hundred corners keeps, taken at once.
+const USUAL_PIECES: usize = 48;
+
 /// Discs kept at the most: they are looked through one by one for every piece.
 const MAX_DISCS: usize = 80;
 
@@ -268,6 +271,10 @@ impl<'a> Search<'a> {
     }
 
     fn keep(&mut self, piece: Piece) {
+        if self.pieces.is_empty() {
+            self.pieces.reserve(USUAL_PIECES);
+            self.heap.reserve(USUAL_PIECES);
+        }
         self.heap
             .push(ByBound(piece.bound, self.pieces.len() as u32));
         self.pieces.push(piece);

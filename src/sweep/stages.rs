@@ -18,7 +18,7 @@ use crate::io::lots::{LotProblem, LotRecord, LotText, Setbacks};
 use crate::io::plane::{Plane, Snapped};
 use crate::io::rows::Row;
 use crate::limits::Limits;
-use crate::placement::{Effort, PlaceError, Placement, Status, largest};
+use crate::placement::{Effort, PlaceError, Placement, Status, largest, largest_on_bare_lot};
 use crate::site::lot::Boundary;
 use crate::site::{Lot, Role, Site, SiteError};
 
@@ -200,17 +200,20 @@ fn largest_on(
     plan: &Plan,
     snap: &dyn Fn(Point) -> Point,
 ) -> Result<Placement, PlaceError> {
-    let site = Site {
-        reading: plan.options.reading.unwrap_or_default(),
-        ..Site::of_lot(lot_of(lot, plan.options.setback_m)?)
-    };
-    let limits = Limits::new(&site)?;
     let effort = Effort {
         max_pieces: plan.max_pieces,
         cancel: Some(plan.cancel),
         ..Effort::default()
     };
-    largest(&limits, &site, effort, snap)
+    let is_bare = lot.1.is_none() && plan.options.setback_m.unwrap_or(0.0) == 0.0;
+    if is_bare {
+        return largest_on_bare_lot(&lot.0, effort, snap);
+    }
+    let site = Site {
+        reading: plan.options.reading.unwrap_or_default(),
+        ..Site::of_lot(lot_of(lot, plan.options.setback_m)?)
+    };
+    largest(&Limits::new(&site)?, &site, effort, snap)
 }
 
 fn lot_of(
@@ -219,9 +222,8 @@ fn lot_of(
 ) -> Result<Lot, SiteError> {
     let boundary = match (boundary, setback_m) {
         (Some(boundary), _) => boundary,
-        (None, None | Some(0.0)) => return Ok(Lot::plain(area)),
-        (None, Some(setback_m)) => {
-            let role = Role::Other;
+        (None, setback_m) => {
+            let (role, setback_m) = (Role::Other, setback_m.unwrap_or(0.0));
             vec![Boundary { role, setback_m }; area.n_segments()]
         }
     };
