@@ -4,7 +4,7 @@
 //! the tangents is an inner approximation, and its answer is never worse. Repeating it is Newton's method on the rows
 //! that bind.
 
-use super::index::{Least, RowIndex};
+use super::index::{Least, RowIndex, freed_from_m};
 use super::piece::{Triangle, Weighted};
 use crate::geom::{Point, Vec2};
 use crate::lp::game::{Game, GameRow};
@@ -63,9 +63,14 @@ pub(super) fn climb(
     size: f64,
     likely: &[u32],
 ) -> Spot {
+    let radius = if index.keeps(start) {
+        least.radius
+    } else {
+        f64::NEG_INFINITY
+    };
     let mut spot = Spot {
         centre: start,
-        radius: least.radius,
+        radius,
         carrying: [(least.row, 0.0); 3],
     };
     let mut here = least.row;
@@ -85,7 +90,7 @@ pub(super) fn climb(
         };
         let gain = step.radius - spot.radius;
         let is_far = step.centre.distance(spot.centre) >= spot.radius;
-        if is_far && !index.is_in_region(step.centre) {
+        if is_far && !index.is_in_region(step.centre) || !index.keeps(step.centre) {
             if reach == SAFE_REACH {
                 break;
             }
@@ -145,8 +150,13 @@ fn step(
 fn tangent(index: &RowIndex, tag: u32, centre: Point, domain: &[Vec2; 3]) -> Option<GameRow> {
     let row = index.row(tag);
     let nearest = row.feature.nearest(centre);
-    let (value, slope) = match row.otherwise {
+    let (value, slope) = match row.otherwise.as_deref() {
         None if row.w == 0.0 => (nearest.distance - row.s - MARGIN_M, 1.0),
+        // Freed by its second condition: it stays so.
+        Some(otherwise) if freed_from_m(&row).is_some_and(|from_m| nearest.distance > from_m) => {
+            let d = domain.map(|v| nearest.distance - otherwise.s - MARGIN_M + nearest.away.dot(v));
+            return Some(GameRow { d, w: 0.0, tag });
+        }
         None => (nearest.distance - row.s, 1.0),
         Some(_) => (
             row.radius_at(nearest.distance),

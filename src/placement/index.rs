@@ -14,6 +14,13 @@ use crate::limits::{Limits, LotRows, Row};
 /// a loop without branches over 100 segments costs less than half of the tree's turns.
 const FEW_SEGMENTS: usize = 24;
 
+/// What the point of a linear program may miss an edge by, m; climbing mends it.
+pub(super) const ROUNDED_OFF_M: f64 = 1e-9;
+
+/// What a place may lack of the distance that frees a row and still count as freed, m: above rounding, and so little that the
+/// radius changes by less than the gap across it.
+const FREED_M: f64 = 1e-11;
+
 /// The extremes of w and s over rows: a bound on what any of them allows at a distance.
 #[derive(Clone, Copy, Debug)]
 struct Weights {
@@ -50,6 +57,9 @@ pub(super) struct RowIndex<'a> {
     limits: &'a Limits,
     /// Rows before this one are half-planes and looked at one by one.
     n_scanned: usize,
+    /// Rows with an edge that a centre is on one side of whatever the radius: those without weight, and those that a distance
+    /// frees from theirs.
+    edged: Vec<u32>,
     tree: Tree,
 }
 
@@ -92,9 +102,17 @@ impl<'a> RowIndex<'a> {
             };
             Tree::Weighted(RunTree::build(limits.n_rows() - n_scanned, node))
         };
+        let first_listed = limits.n_rows() - limits.listed_rows().len();
+        let listed = (first_listed as u32..).zip(limits.listed_rows());
+        let has_edge = |row: &Row| row.w == 0.0 || freed_from_m(row).is_some();
+        let edged = listed
+            .filter(|(_, row)| has_edge(row))
+            .map(|(i, _)| i)
+            .collect();
         RowIndex {
             limits,
             n_scanned,
+            edged,
             tree,
         }
     }
@@ -110,10 +128,23 @@ impl<'a> RowIndex<'a> {
             return self.limits.region.boundary()[i as usize].distance(c);
         }
         let row = self.row(i);
+        let distance = row.feature.distance(c);
         match row.otherwise {
-            None => row.feature.distance(c) - row.s,
-            Some(_) => row.radius(c),
+            None => distance - row.s,
+            Some(_) if freed_from_m(&row).is_some_and(|from_m| distance > from_m) => f64::INFINITY,
+            Some(_) => row.radius_at(distance),
         }
+    }
+
+    /// Whether a place keeps all rows without weight, and is freed to the last digit where a row counts as freed.
+    pub fn keeps(&self, c: Point) -> bool {
+        self.edged.iter().all(|&i| {
+            let row = self.row(i);
+            let distance = row.feature.distance(c);
+            let counts_as_freed = freed_from_m(&row).is_some_and(|from_m| distance > from_m);
+            row.radius_at(distance) >= 0.0
+                && (!counts_as_freed || row.radius_at(distance) == f64::INFINITY)
+        })
     }
 
     /// The weight that goes with [`RowIndex::entry`].
@@ -138,7 +169,8 @@ impl<'a> RowIndex<'a> {
         self.limits
     }
 
-    /// The row that allows the least radius at `c`; `likely` rows are tried first. Cost about O(log n) for rows in ring
+    /// The row that allows the least radius at `c`; `likely` rows are tried first. A row without weight counts as kept where
+    /// rounding alone breaks it, since the points of linear programs lie on its edge: see [`RowIndex::keeps`]. Cost about O(log n) for rows in ring
     /// order.
     pub fn least(&self, c: Point, likely: impl Iterator<Item = u32>) -> Least {
         match &self.tree {
@@ -150,7 +182,15 @@ impl<'a> RowIndex<'a> {
                 }
             }
             Tree::Plain(tree) => self.least_plain(tree, c, likely),
-            Tree::Weighted(tree) => self.least_weighted(tree, c, likely),
+            Tree::Weighted(tree) => self.least_weighted(tree, c, likely, false),
+        }
+    }
+
+    /// The row that allows the least radius at `c`, of those without an edge.
+    pub fn least_edgeless(&self, c: Point) -> Least {
+        match &self.tree {
+            Tree::Weighted(tree) => self.least_weighted(tree, c, std::iter::empty(), true),
+            Tree::Few | Tree::Plain(_) => self.least(c, std::iter::empty()),
         }
     }
 
@@ -192,11 +232,24 @@ impl<'a> RowIndex<'a> {
         tree: &RunTree<Weights>,
         c: Point,
         likely: impl Iterator<Item = u32>,
+        edgeless_only: bool,
     ) -> Least {
         let mut found = 0;
         let mut best = f64::INFINITY;
         let mut visit = |i: usize, best: &mut f64| {
-            let radius = self.limits.row(i).radius(c);
+            let row = self.limits.row(i);
+            let distance = row.feature.distance(c);
+            let radius = match freed_from_m(&row) {
+                Some(from_m) if distance > from_m => f64::INFINITY,
+                _ => row.radius_at(distance),
+            };
+            let freed_from_m = freed_from_m(&row);
+            let has_edge = row.w == 0.0 || freed_from_m.is_some();
+            let is_rounded_off =
+                || row.w == 0.0 && radius < 0.0 && distance > row.s - ROUNDED_OFF_M;
+            if has_edge && (edgeless_only || is_rounded_off()) {
+                return;
+            }
             if radius < *best {
                 (*best, found) = (radius, i);
             }
@@ -269,4 +322,13 @@ impl<'a> RowIndex<'a> {
         }
         best
     }
+}
+
+/// From which distance on a row's second condition counts as freeing it from its weight, m; `None` where none does.
+pub(super) fn freed_from_m(row: &Row) -> Option<f64> {
+    let otherwise = row
+        .otherwise
+        .as_deref()
+        .filter(|otherwise| otherwise.w == 0.0)?;
+    Some(otherwise.s - FREED_M)
 }

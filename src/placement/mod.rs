@@ -127,7 +127,12 @@ fn finished(
     let upper_m = 2.0 * found.upper;
     let circle = found.best.map(|spot| {
         let slide = slide::slide(index, &spot);
-        let centre = snap(slide.map_or(spot.centre, |[from, to]| from.midpoint(to)));
+        let wished = slide.map_or(spot.centre, |[from, to]| from.midpoint(to));
+        // Moving a centre on the edge of a row without weight may break it; the spot itself keeps it.
+        let centre = [snap(wished), wished]
+            .into_iter()
+            .find(|&c| index.keeps(c))
+            .unwrap_or(spot.centre);
         let claimed = index
             .least(centre, std::iter::empty())
             .radius

@@ -146,11 +146,17 @@ pub(super) fn look(
         };
         if value.bound > enough {
             least = index.least(point, game.rows().iter().map(|row| row.tag));
-            if !game.has(least.row) {
-                let d = corners.map(|c| index.entry(least.row, c));
-                if d.iter().all(|v| v.is_finite()) && game.push(game_row(least.row, d)) {
-                    continue;
-                }
+            if index.weight(least.row) == 0.0 && game.has(least.row) {
+                // The point keeps the row's interpolation and, being convex, breaks the row itself: what else binds there?
+                least = index.least_edgeless(point);
+            }
+            // A row that allows any radius at a corner bounds nothing here; the next one without an edge may.
+            let is_added = add(index, game, corners, least.row);
+            if is_added
+                || !game.has(least.row)
+                    && add(index, game, corners, index.least_edgeless(point).row)
+            {
+                continue;
             }
         }
         return Looked {
@@ -161,6 +167,20 @@ pub(super) fn look(
             least,
         };
     }
+}
+
+/// Adds a row that is new to the game and allows no infinite radius at a corner, while there is room; whether it did.
+fn add(index: &RowIndex, game: &mut Game, corners: &Triangle, row: u32) -> bool {
+    if game.has(row) {
+        return false;
+    }
+    let d = corners.map(|c| index.entry(row, c));
+    d.iter().all(|v| v.is_finite())
+        && game.push(GameRow {
+            d,
+            w: index.weight(row),
+            tag: row,
+        })
 }
 
 /// The bound of one row alone, where it is enough: half the pieces dropped need no more.

@@ -78,9 +78,6 @@ const MAX_DISCS: usize = 80;
 /// Near ties that are climbed to at the most: discs are looked through one by one.
 const MAX_CLIMBED: usize = 64;
 
-/// What the point of a linear program may miss a row without weight by, m; climbing mends it.
-const ROUNDED_OFF_M: f64 = 1e-9;
-
 /// Units in the last place that a bound may be off by: a distance takes about ten operations.
 const UNITS_A_BOUND: u16 = 16;
 
@@ -252,8 +249,7 @@ impl<'a> Search<'a> {
             &piece.handed,
             enough,
         );
-        let is_worth_it = looked.least.radius > self.best_radius() || self.is_nearly_kept(&looked);
-        let is_outside = is_worth_it && !self.offer(&looked);
+        let is_outside = looked.least.radius > self.best_radius() && !self.offer(&looked);
         if looked.bound < piece.bound {
             (piece.bound, piece.weights) = (looked.bound, looked.weights);
         }
@@ -346,13 +342,6 @@ impl<'a> Search<'a> {
         true
     }
 
-    /// Whether a piece's point breaks a row without weight by rounding alone, as the optimum on such a row's edge does.
-    fn is_nearly_kept(&self, looked: &Looked) -> bool {
-        let row = self.index.row(looked.least.row);
-        let is_edge = looked.bound > self.enough() && row.w == 0.0 && looked.least.radius < 0.0;
-        is_edge && row.feature.distance(looked.point) > row.s - ROUNDED_OFF_M
-    }
-
     /// Whether a piece's point lies in the region; pieces of the lot's own triangles do.
     fn is_in_region(&self, p: Point) -> bool {
         !self.may_be_outside || self.index.is_in_region(p)
@@ -361,7 +350,7 @@ impl<'a> Search<'a> {
     /// The best spot near a piece's point: the point itself where it comes up to the piece's bound.
     fn climb_from(&mut self, looked: &Looked) -> Spot {
         let Least { radius, .. } = looked.least;
-        if looked.bound - radius <= EXACT * radius {
+        if looked.bound - radius <= EXACT * radius && self.index.keeps(looked.point) {
             return Spot {
                 centre: looked.point,
                 radius,

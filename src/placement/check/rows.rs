@@ -54,6 +54,7 @@ impl<'a> Rows<'a> {
     pub fn bounds(&self, t: &[Point; 3], weights: &[(u32, f64)], upper: f64) -> Result<(), String> {
         let mut columns = [Interval::exact(0.0); 3];
         let mut w = Interval::exact(0.0);
+        let mut is_weightless = true;
         for &(i, y) in weights {
             if !y.is_finite() || y < 0.0 {
                 return Err(format!(
@@ -62,6 +63,7 @@ impl<'a> Rows<'a> {
             }
             let row = self.row(i)?;
             let y = Interval::exact(y);
+            is_weightless &= weight_of(&row) == 0.0;
             w = w + y * Interval::exact(weight_of(&row));
             for (column, &c) in columns.iter_mut().zip(t) {
                 let asked =
@@ -73,7 +75,7 @@ impl<'a> Rows<'a> {
             }
         }
         let greatest = columns[0].hi.max(columns[1].hi).max(columns[2].hi);
-        if w.hi == 0.0 && !weights.is_empty() && greatest < 0.0 {
+        if is_weightless && !weights.is_empty() && greatest < 0.0 {
             return Ok(());
         }
         if w.lo <= 0.0 {
