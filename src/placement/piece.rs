@@ -106,7 +106,7 @@ pub(super) struct Looked {
 /// allows least there.
 /// Method: as in the module's head; stops when the bound is at most `enough`, when the least row at the point is in the
 /// game already, or when the game is full.
-/// Preconditions: `handed` speaks of the same corners and its first row has positive weight.
+/// Preconditions: `handed` speaks of the same corners and its first row, if it has one, has positive weight.
 /// Cost: three distances for a new row and one query of the index a round; three to six rows.
 pub(super) fn look(
     index: &RowIndex,
@@ -115,6 +115,12 @@ pub(super) fn look(
     handed: &Handed,
     enough: f64,
 ) -> Looked {
+    // A row of the lot bounds every piece; it stands in where no row handed on does.
+    let of_lot = handed
+        .rows()
+        .is_empty()
+        .then(|| Handed::new(index, [0], corners));
+    let handed = of_lot.as_ref().unwrap_or(handed);
     if let Some((bound, weights)) = single_row_bound(index, handed, enough) {
         let least = Least {
             row: handed.rows[0],
