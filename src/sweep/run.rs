@@ -15,7 +15,7 @@ use crate::io::rows::Row;
 const BATCH_LOTS: usize = 4096;
 /// A batch is full once so much of the file went into it, bytes; a single larger lot is a batch of its own.
 const BATCH_BYTES: u64 = 8 << 20;
-/// Lots taken by a core at once: their areas, 100 kB for ten corners each, stay in its own cache between the stages.
+/// Lots taken by a core at once, and placed in the order of their size, so that the code for small ones stays warm.
 const HANDFUL: usize = 1024;
 /// Batches that wait between two of reading, placing and writing.
 const WAITING: usize = 2;
